@@ -1,0 +1,1 @@
+"""Runs a study: stages in order, cached, in parallel, resumable."""
