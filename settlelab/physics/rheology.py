@@ -5,9 +5,15 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 import numpy as np
-from numpy.typing import ArrayLike, NDArray
+from numpy.typing import ArrayLike
 
-FloatArray = NDArray[np.float64]
+from settlelab.physics.constants import FloatArray
+
+
+# Rotational viscometer with rotor-bob geometry R1B1 (rotor radius 18.415 mm, bob radius 17.245 mm). The shear rate at the
+# bob follows from the radii, for a Newtonian liquid; the stress is fixed by the 300 rpm dial reading being mPa s.
+SHEAR_RATE_PER_RPM = 1.7023  # 1/s per rpm
+SHEAR_STRESS_PER_DEGREE = 0.5107  # Pa per degree
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -23,12 +29,16 @@ class Rheology:
 
     def shear_stress(self, shear_rate: ArrayLike) -> FloatArray:
         """Shear stress [Pa] at a shear rate [1/s] above 0."""
-        rate = np.asarray(shear_rate, dtype=np.float64)
-        consistency, flow_index, yield_stress = (
-            np.asarray(field, dtype=np.float64) for field in (self.consistency, self.flow_index, self.yield_stress)
-        )
-        return yield_stress + consistency * rate**flow_index
+        consistency, flow_index, yield_stress = self.arrays()
+        return np.asarray(yield_stress + consistency * np.asarray(shear_rate, dtype=np.float64) ** flow_index)
 
     def viscosity(self, shear_rate: ArrayLike) -> FloatArray:
         """Apparent viscosity [Pa s] at a shear rate [1/s] above 0."""
-        return self.shear_stress(shear_rate) / np.asarray(shear_rate, dtype=np.float64)
+        return np.asarray(self.shear_stress(shear_rate) / np.asarray(shear_rate, dtype=np.float64))
+
+    def arrays(self) -> tuple[FloatArray, FloatArray, FloatArray]:
+        """Consistency [Pa s^n], flow index [-] and yield stress [Pa] as arrays."""
+        consistency, flow_index, yield_stress = (
+            np.asarray(field, dtype=np.float64) for field in (self.consistency, self.flow_index, self.yield_stress)
+        )
+        return consistency, flow_index, yield_stress

@@ -1,0 +1,47 @@
+"""Drag laws and terminal velocity.
+
+In: Reynolds numbers and shape descriptors, or the properties of particle and fluid. Out: drag coefficients and
+terminal velocities in unbounded fluid. `DRAG` holds the published laws; importing the modules below fills it.
+"""
+
+from __future__ import annotations
+
+from settlelab.physics.drag import nonspherical, spheres
+from settlelab.physics.drag.nonnewtonian import (
+    CRITICAL_YIELD_NUMBER,
+    creeping_correction,
+    generalised_reynolds,
+    held,
+    power_law_correction,
+)
+from settlelab.physics.drag.nonspherical import ganser_factors, scaled_drag
+from settlelab.physics.drag.registry import DESCRIPTORS, DRAG, Method, published, usable_methods
+from settlelab.physics.drag.solver import (
+    DragLaw,
+    Settling,
+    drag_coefficient_from_velocity,
+    drag_in_fluid,
+    terminal_velocity,
+)
+
+__all__ = [
+    "CRITICAL_YIELD_NUMBER",
+    "DESCRIPTORS",
+    "DRAG",
+    "DragLaw",
+    "Method",
+    "Settling",
+    "creeping_correction",
+    "drag_coefficient_from_velocity",
+    "drag_in_fluid",
+    "ganser_factors",
+    "generalised_reynolds",
+    "held",
+    "nonspherical",
+    "power_law_correction",
+    "published",
+    "scaled_drag",
+    "spheres",
+    "terminal_velocity",
+    "usable_methods",
+]

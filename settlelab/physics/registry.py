@@ -1,0 +1,116 @@
+"""What every published method carries, whatever it computes: its name, where it comes from, and where it holds.
+
+An entry is the whole truth about a method: the inputs it needs are the parameters of its formula, read from the
+signature, so that tables, tests and messages are all derived from it.
+"""
+
+from __future__ import annotations
+
+import inspect
+from collections.abc import Callable, Iterator, Mapping
+from dataclasses import dataclass
+from typing import Any, Generic, TypeVar
+
+import numpy as np
+from numpy.typing import ArrayLike
+
+from settlelab.errors import SettlelabError, did_you_mean
+from settlelab.physics.constants import BoolArray, FloatArray
+
+Formula = Callable[..., FloatArray]
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Entry:
+    """One published method: its formula and what a reader must know about it."""
+
+    name: str
+    source: str  # authors (year), journal, volume, pages
+    formula: Formula
+    valid: Mapping[str, tuple[float, float]]  # input -> closed range that the source states, SI
+    where: str = ""  # equation, table, or the later work whose reading was taken
+    note: str = ""  # what was taken where print and physics differ, and what to beware of
+    confirmed: bool = True  # False: coefficients from memory or a single witness
+
+    @property
+    def parameters(self) -> tuple[str, ...]:
+        """Names of all inputs of the formula."""
+        return tuple(inspect.signature(self.formula).parameters)
+
+    def evaluate(self, **inputs: ArrayLike) -> FloatArray:
+        """The formula at these inputs; inputs that it does not use are passed over.
+
+        Raises
+        ------
+        ValueError
+            An input that the formula needs was not given.
+        """
+        return np.asarray(self.formula(**self._needed(inputs)), dtype=np.float64)
+
+    def within(self, **inputs: ArrayLike) -> BoolArray:
+        """Where every range that the source states is kept; an unknown (nan) input does not keep it.
+
+        Only stated ranges are checked: a law for spheres states none for shape, and `diameter` tells that it is one.
+
+        Raises
+        ------
+        ValueError
+            An input that the formula needs was not given.
+        """
+        needed = self._needed(inputs)
+        shape = np.broadcast_shapes(*(value.shape for value in needed.values()))
+        inside = np.ones(shape, dtype=np.bool_)
+        for name, (low, high) in self.valid.items():
+            inside = inside & (needed[name] >= low) & (needed[name] <= high)
+        return inside
+
+    def _needed(self, inputs: Mapping[str, ArrayLike]) -> dict[str, FloatArray]:
+        missing = [name for name in self.parameters if name not in inputs]
+        if missing:
+            raise ValueError(f"{self.name} needs {' and '.join(missing)}")
+        return {name: np.asarray(inputs[name], dtype=np.float64) for name in self.parameters}
+
+
+E = TypeVar("E", bound=Entry)
+
+
+class Registry(Mapping[str, E], Generic[E]):
+    """Published methods by name, in the order in which they were entered."""
+
+    def __init__(self, kind: str, entry: type[E]) -> None:
+        self._kind = kind
+        self._entry = entry
+        self._entries: dict[str, E] = {}
+
+    def published(self, name: str, **facts: Any) -> Callable[[Formula], Formula]:  # noqa: ANN401 (fields of the entry)
+        """Enter a formula under its name, with the facts about it (the fields of the entry class)."""
+
+        def enter(formula: Formula) -> Formula:
+            if name in self._entries:
+                raise ValueError(f"{name} is entered twice")
+            self._entries[name] = self._entry(name=name, formula=formula, **facts)
+            return formula
+
+        return enter
+
+    def __getitem__(self, name: str) -> E:
+        return self._entries[name]
+
+    def __iter__(self) -> Iterator[str]:
+        return iter(self._entries)
+
+    def __len__(self) -> int:
+        return len(self._entries)
+
+    def find(self, name: str) -> E:
+        """The method of that name.
+
+        Raises
+        ------
+        SettlelabError
+            No such method; the nearest name is offered.
+        """
+        if name not in self._entries:
+            hint = did_you_mean(name, self._entries)
+            raise SettlelabError(f'"{name}" is not a {self._kind} method on board{hint}; known: {", ".join(self)}')
+        return self._entries[name]
