@@ -36,7 +36,7 @@ LIQUIDS: Registry[LiquidProperty] = Registry("liquid property", LiquidProperty)
     unit="kg/m3",
     relative_u=1e-5,
     valid={"temperature": (273.15, 313.15)},
-    note="Air-free water at 101325 Pa. The equation itself is good to 1e-6; 1e-5 allows for dissolved air and pressure. "
+    note="Air-free water at 101325 Pa. The equation is good to 1e-6; 1e-5 allows for dissolved air and pressure. "
     "Tap water differs by far more: weigh it.",
 )
 def _tanaka(temperature: FloatArray) -> FloatArray:

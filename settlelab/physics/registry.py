@@ -7,7 +7,7 @@ signature, so that tables, tests and messages are all derived from it.
 from __future__ import annotations
 
 import inspect
-from collections.abc import Callable, Iterator, Mapping
+from collections.abc import Callable, Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from typing import Any, Generic, TypeVar
 
@@ -27,7 +27,7 @@ class Entry:
     name: str
     source: str  # authors (year), journal, volume, pages
     formula: Formula
-    valid: Mapping[str, tuple[float, float]]  # input -> closed range that the source states, SI
+    valid: Mapping[str, tuple[float, float]]  # quantity -> closed range that the source states, SI
     where: str = ""  # equation, table, or the later work whose reading was taken
     note: str = ""  # what was taken where print and physics differ, and what to beware of
     confirmed: bool = True  # False: coefficients from memory or a single witness
@@ -45,7 +45,7 @@ class Entry:
         ValueError
             An input that the formula needs was not given.
         """
-        return np.asarray(self.formula(**self._needed(inputs)), dtype=np.float64)
+        return np.asarray(self.formula(**self._taken(self.parameters, inputs)), dtype=np.float64)
 
     def within(self, **inputs: ArrayLike) -> BoolArray:
         """Where every range that the source states is kept; an unknown (nan) input does not keep it.
@@ -55,20 +55,19 @@ class Entry:
         Raises
         ------
         ValueError
-            An input that the formula needs was not given.
+            An input of the formula, or a quantity with a stated range, was not given.
         """
-        needed = self._needed(inputs)
-        shape = np.broadcast_shapes(*(value.shape for value in needed.values()))
-        inside = np.ones(shape, dtype=np.bool_)
+        known = self._taken({**dict.fromkeys(self.parameters), **dict.fromkeys(self.valid)}, inputs)
+        inside = np.ones(np.broadcast_shapes(*(value.shape for value in known.values())), dtype=np.bool_)
         for name, (low, high) in self.valid.items():
-            inside = inside & (needed[name] >= low) & (needed[name] <= high)
+            inside = inside & (known[name] >= low) & (known[name] <= high)
         return inside
 
-    def _needed(self, inputs: Mapping[str, ArrayLike]) -> dict[str, FloatArray]:
-        missing = [name for name in self.parameters if name not in inputs]
+    def _taken(self, names: Iterable[str], inputs: Mapping[str, ArrayLike]) -> dict[str, FloatArray]:
+        missing = [name for name in names if name not in inputs]
         if missing:
             raise ValueError(f"{self.name} needs {' and '.join(missing)}")
-        return {name: np.asarray(inputs[name], dtype=np.float64) for name in self.parameters}
+        return {name: np.asarray(inputs[name], dtype=np.float64) for name in names}
 
 
 E = TypeVar("E", bound=Entry)

@@ -9,9 +9,8 @@ from numpy.typing import ArrayLike
 
 from settlelab.physics.constants import FloatArray
 
-
-# Rotational viscometer with rotor-bob geometry R1B1 (rotor radius 18.415 mm, bob radius 17.245 mm). The shear rate at the
-# bob follows from the radii, for a Newtonian liquid; the stress is fixed by the 300 rpm dial reading being mPa s.
+# Rotational viscometer with rotor and bob R1B1 (radii 18.415 and 17.245 mm). The shear rate at the bob follows from the
+# radii, for a Newtonian liquid; the stress is fixed by the dial reading at 300 rpm being the viscosity in mPa s.
 SHEAR_RATE_PER_RPM = 1.7023  # 1/s per rpm
 SHEAR_STRESS_PER_DEGREE = 0.5107  # Pa per degree
 

@@ -61,7 +61,9 @@ def bracketed_root(
     return np.where(np.isnan(fa) | np.isnan(fb), np.nan, root)
 
 
-def _share(a: FloatArray, b: FloatArray, c: FloatArray, values: tuple[FloatArray, FloatArray, FloatArray]) -> FloatArray:
+def _share(
+    a: FloatArray, b: FloatArray, c: FloatArray, values: tuple[FloatArray, FloatArray, FloatArray]
+) -> FloatArray:
     """Where to look next, as a share of the way from a to b: by inverse quadratic interpolation if it is safe."""
     fa, fb, fc = values
     with np.errstate(divide="ignore", invalid="ignore", over="ignore"):

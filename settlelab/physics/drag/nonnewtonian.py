@@ -15,12 +15,12 @@ from settlelab.physics.constants import STANDARD_GRAVITY, BoolArray, FloatArray
 from settlelab.physics.rheology import Rheology
 
 # Largest yield number tau0/(g d (rho_s - rho)) at which a sphere still moves. Beris, Tsamopoulos, Armstrong & Brown
-# (1985), J. Fluid Mech. 158, 219-244, print 0.143 for 2 pi r^2 tau0 over the weight in the fluid, which is three times it.
+# (1985), J. Fluid Mech. 158, 219-244, print 0.143 for 2 pi r^2 tau0 over the weight in the fluid: three times it.
 CRITICAL_YIELD_NUMBER = 0.143 / 3
 
 # Drag of a sphere in a creeping power-law fluid over 24/Re: variational solution in unbounded fluid, stable to 1e-4 on
-# refinement. The classical finite-element table (Gu & Tanner 1985, J. Non-Newton. Fluid Mech. 17, 1-12) is 1 to 4 % lower
-# for flow indices of 0.3 to 0.8. The value at 0 is the plastic limit, tied to the critical yield number.
+# refinement. The classical finite-element table (Gu & Tanner 1985, J. Non-Newton. Fluid Mech. 17, 1-12) is 1 to 4 %
+# lower for flow indices of 0.3 to 0.8. The value at 0 is the plastic limit, tied to the critical yield number.
 _PLASTIC = 1 / (18 * CRITICAL_YIELD_NUMBER)
 _FLOW_INDEX = (0.0, 0.1, 0.2, 0.3, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9, 1.0)
 _CREEPING = (_PLASTIC, 1.3440, 1.4363, 1.4839, 1.4952, 1.4759, 1.4288, 1.3556, 1.2579, 1.1381, 1.0)
@@ -81,9 +81,9 @@ def power_law_correction(flow_index: ArrayLike) -> FloatArray:
 def creeping_correction(velocity: ArrayLike, *, diameter: ArrayLike, rheology: Rheology) -> FloatArray:
     """X of a sphere in a Herschel-Bulkley fluid: creeping drag over 24 / generalised Reynolds number.
 
-    (X(n) + 1.165 Bi + c sqrt(Bi)) / (1 + Bi), Bi = tau0/(K (V/d)^n), c = 1.7 at n = 1 and 0.6 at n = 0.5, linear between and
-    beyond, not below 0. An interpolation of our own, within 4 % of computed values; without yield stress it is X(n),
-    and at rest it makes the sphere stop at the critical yield number of Beris et al. (1985).
+    (X(n) + 1.165 Bi + c sqrt(Bi)) / (1 + Bi), Bi = tau0/(K (V/d)^n), c = 1.7 at n = 1 and 0.6 at n = 0.5, linear
+    between and beyond, not below 0. An interpolation of our own, within 4 % of computed values; without yield
+    stress it is X(n), and at rest it makes the sphere stop at the critical yield number of Beris et al. (1985).
 
     Parameters
     ----------
@@ -106,7 +106,7 @@ def creeping_correction(velocity: ArrayLike, *, diameter: ArrayLike, rheology: R
     rate = np.abs(np.asarray(velocity, dtype=np.float64)) / np.asarray(diameter, dtype=np.float64)
     share = yield_stress / (yield_stress + consistency * rate**n)  # Bi/(1 + Bi), safe at rest
     bend = np.maximum(1.7 - 2.2 * (1 - n), 0.0)
-    return power_law * (1 - share) + _PLASTIC * share + bend * np.sqrt(share * (1 - share))
+    return np.asarray(power_law * (1 - share) + _PLASTIC * share + bend * np.sqrt(share * (1 - share)))
 
 
 def held(

@@ -42,7 +42,7 @@ def scaled_drag(
     ----------
     Ganser (1993), Powder Technol. 77, 143-152; Thompson & Clark (1991), Powder Technol. 67, 57-66.
     """
-    return k_newton * base(reynolds * k_stokes * k_newton)
+    return np.asarray(k_newton * base(reynolds * k_stokes * k_newton))
 
 
 @published(
@@ -61,7 +61,7 @@ def haider_levenspiel(reynolds: FloatArray, sphericity: FloatArray) -> FloatArra
     b = 0.0964 + 0.5565 * sphericity
     c = np.exp(np.polyval([-10.2599, 18.4222, -13.8944, 4.905], sphericity))
     d = np.exp(np.polyval([15.8855, -20.7322, 12.2584, 1.4681], sphericity))
-    return 24 / reynolds * (1 + a * reynolds**b) + c / (1 + d / reynolds)
+    return np.asarray(24 / reynolds * (1 + a * reynolds**b) + c / (1 + d / reynolds))
 
 
 def ganser_factors(sphericity: FloatArray) -> tuple[FloatArray, FloatArray]:
@@ -118,7 +118,7 @@ def swamee_ojha(reynolds: FloatArray, corey_shape_factor: FloatArray) -> FloatAr
     b = corey_shape_factor
     viscous = 48.5 / ((1 + 4.5 * b**0.35) ** 0.8 * reynolds**0.64)
     inertial = (reynolds / (reynolds + 100 + 100 * b)) ** 0.32 / (b**18 + 1.05 * b**0.8)
-    return (viscous + inertial) ** 1.25
+    return np.asarray((viscous + inertial) ** 1.25)
 
 
 @published(
@@ -134,7 +134,7 @@ def coelho_massarani(reynolds: FloatArray, sphericity: FloatArray) -> FloatArray
     """Drag coefficient of isometric particles by sphericity, with the true limits at both ends."""
     k_stokes = 0.843 * np.log10(sphericity / 0.065)
     newton = 5.31 - 4.88 * sphericity
-    return ((24 / (k_stokes * reynolds)) ** 0.85 + newton**0.85) ** (1 / 0.85)
+    return np.asarray(((24 / (k_stokes * reynolds)) ** 0.85 + newton**0.85) ** (1 / 0.85))
 
 
 @published(
@@ -150,7 +150,7 @@ def wu_wang(reynolds: FloatArray, corey_shape_factor: FloatArray) -> FloatArray:
     m = 53.5 * np.exp(-0.65 * corey_shape_factor)
     n = 5.65 * np.exp(-2.5 * corey_shape_factor)
     power = 0.7 + 0.9 * corey_shape_factor
-    return ((m / reynolds) ** (1 / power) + n ** (1 / power)) ** power
+    return np.asarray(((m / reynolds) ** (1 / power) + n ** (1 / power)) ** power)
 
 
 @published(
@@ -175,4 +175,4 @@ def bagheri_bonadonna(
     drag_newton = 10 ** (a * (-np.log10(form_newton)) ** b)
     scaled = reynolds * drag_newton / drag_stokes
     viscous = 24 * drag_stokes / reynolds * (1 + 0.125 * scaled ** (2 / 3))
-    return viscous + 0.46 * drag_newton / (1 + 5330 / scaled)
+    return np.asarray(viscous + 0.46 * drag_newton / (1 + 5330 / scaled))

@@ -101,7 +101,7 @@ def terminal_velocity(
 def _lowest_root(
     excess: Callable[[FloatArray], FloatArray], diameter: FloatArray, fluid_density: FloatArray, fluid: Rheology
 ) -> FloatArray:
-    """ln V of the slowest balance: below the onset of the drag crisis if there is one, else above it."""
+    """Log velocity of the slowest balance: below the onset of the drag crisis if there is one, else above."""
     consistency, n, _ = fluid.arrays()
 
     def log_velocity(reynolds: float) -> FloatArray:

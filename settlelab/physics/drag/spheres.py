@@ -130,7 +130,7 @@ def brown_lawler(reynolds: FloatArray) -> FloatArray:
     where="eq. 1",
     valid={"reynolds": (0.0, 2e5)},
     diameter="sphere",
-    note="Smooth over its whole range, within 3 % of the standard curve up to Re 1e4: the base of the calibrated forms.",
+    note="Smooth over its whole range, within 3 % of the standard curve up to Re 1e4: base of the calibrated forms.",
 )
 def cheng(reynolds: FloatArray) -> FloatArray:
     """Drag coefficient of a sphere in one smooth expression."""
