@@ -58,7 +58,7 @@ class InputFaults(SettlelabError):
         super().__init__("\n".join(str(fault) for fault in self.faults))
 
 
-def did_you_mean(word: str, known: Iterable[str]) -> str:
-    """A hint ` (did you mean "..."?)` with the nearest known name, or nothing."""
-    near = difflib.get_close_matches(word, list(known), n=1, cutoff=0.6)
+def did_you_mean(word: str, known: Iterable[str], *, cutoff: float = 0.6) -> str:
+    """A hint ` (did you mean "..."?)` with the nearest known name of at least `cutoff` likeness, or nothing."""
+    near = difflib.get_close_matches(word, list(known), n=1, cutoff=cutoff)
     return f' (did you mean "{near[0]}"?)' if near else ""

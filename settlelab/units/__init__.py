@@ -8,12 +8,13 @@ from __future__ import annotations
 
 from settlelab.units.headings import Heading, Unit, from_headings, heading, parse_heading, with_headings
 from settlelab.units.quantity import Quantity, parse_number, parse_quantity, uses_decimal_comma
-from settlelab.units.spelling import from_si, si_unit, to_si, unit_known
+from settlelab.units.spelling import difference_to_si, from_si, si_unit, to_si, unit_known
 
 __all__ = [
     "Heading",
     "Quantity",
     "Unit",
+    "difference_to_si",
     "from_headings",
     "from_si",
     "heading",

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 import re
 from dataclasses import dataclass
 
@@ -64,12 +65,12 @@ def parse_number(text: str, *, decimal_comma: bool = False) -> float:
         fraction = plain.replace(".", ",") if decimal_comma else plain.replace(",", ".")
         raise ValueError(f"certain: write {whole} or {fraction}, whichever it is")
     number = float(plain.replace(",", "."))
-    if abs(number) == float("inf"):
+    if math.isinf(number):
         raise ValueError("a finite number such as 12.5")
     return number
 
 
-def parse_quantity(text: str, dimension: str, *, decimal_comma: bool = False) -> Quantity:
+def parse_quantity(text: str, dimension: str, *, unit: str = "", decimal_comma: bool = False) -> Quantity:
     """A value with its standard uncertainty in SI.
 
     Parameters
@@ -78,7 +79,9 @@ def parse_quantity(text: str, dimension: str, *, decimal_comma: bool = False) ->
         Value, optional `±` (also `+-`, `+/-`) and uncertainty, unit, optional coverage factor: `62 ± 0.3 %`,
         `(190.0 ± 0.5) mm (k=2)`, `21.4 °C ± 0.2 K`, relative `12.4 mm ± 1 %`. A unit typed once counts for both.
     dimension : str
-        SI unit of the answer, such as "m", "kg/m3", "1"; only for "1" may the unit be left out.
+        SI unit of the answer, such as "m", "kg/m3", "1"; only for "1" may the unit be left out everywhere.
+    unit : str
+        Unit of a text that names none: that of the column heading.
     decimal_comma : bool
         See `parse_number`.
 
@@ -93,8 +96,9 @@ def parse_quantity(text: str, dimension: str, *, decimal_comma: bool = False) ->
     match = _TEXT.fullmatch(tidy.strip())
     if match is None:
         raise ValueError(_wanted(dimension))
-    unit, u_unit = match["unit"], match["u_unit"] or ""
-    unit = unit or u_unit
+    u_unit = match["u_unit"] or ""
+    from_u = "" if unit and u_unit == "%" else u_unit  # 12.4 ± 1 % in a column in mg: relative
+    unit = match["unit"] or from_u or unit
     if not unit and dimension != "1":
         raise ValueError(f"{_wanted(dimension)} (its unit is missing)")
     _must_fit(unit, dimension)

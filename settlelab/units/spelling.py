@@ -17,7 +17,17 @@ from numpy.typing import NDArray
 if TYPE_CHECKING:
     from pint import UnitRegistry
 
-__all__ = ["SI", "Conversion", "Dimension", "conversion", "from_si", "si_unit", "to_si", "unit_known"]
+__all__ = [
+    "SI",
+    "Conversion",
+    "Dimension",
+    "conversion",
+    "difference_to_si",
+    "from_si",
+    "si_unit",
+    "to_si",
+    "unit_known",
+]
 
 Number = TypeVar("Number", float, NDArray[np.float64])
 
@@ -193,6 +203,17 @@ def to_si(value: Number, unit: str) -> Number:
     """
     way = conversion(unit)
     return value * way.factor + way.offset
+
+
+def difference_to_si(value: Number, unit: str) -> Number:
+    """A difference, such as an uncertainty, typed in `unit`, in SI: 1 °F is 0.556 K.
+
+    Raises
+    ------
+    ValueError
+        The unit is not on our list.
+    """
+    return value * conversion(unit).factor
 
 
 def from_si(value: Number, unit: str) -> Number:
