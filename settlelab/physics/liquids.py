@@ -25,7 +25,7 @@ class LiquidProperty(Entry):
     relative_u: float  # standard uncertainty of the equation for the pure liquid, over the value
 
 
-LIQUIDS: Registry[LiquidProperty] = Registry("liquid property", LiquidProperty)
+LIQUIDS: Registry[LiquidProperty] = Registry(LiquidProperty)
 
 
 @LIQUIDS.published(
@@ -40,6 +40,7 @@ LIQUIDS: Registry[LiquidProperty] = Registry("liquid property", LiquidProperty)
     "Tap water differs by far more: weigh it.",
 )
 def _tanaka(temperature: FloatArray) -> FloatArray:
+    """Density of air-free water at atmospheric pressure by temperature."""
     t = temperature - ZERO_CELSIUS
     return 999.974950 * (1 - (t - 3.983035) ** 2 * (t + 301.797) / (522528.9 * (t + 69.34881)))
 
@@ -56,6 +57,7 @@ def _tanaka(temperature: FloatArray) -> FloatArray:
     "because its coverage factor could not be confirmed.",
 )
 def _iapws(temperature: FloatArray) -> FloatArray:
+    """Viscosity of liquid water at atmospheric pressure by temperature."""
     reduced = temperature / 300
     powers = 280.68 * reduced**-1.9 + 511.45 * reduced**-7.7 + 61.131 * reduced**-19.6 + 0.45903 * reduced**-40
     return 1e-6 * powers
@@ -73,6 +75,7 @@ def _iapws(temperature: FloatArray) -> FloatArray:
     "The density of pure glycerol is 1273.3 - 0.6121 t, not the rounded 1273 - 0.612 t that goes round.",
 )
 def _volk_kaehler(mass_fraction: FloatArray, temperature: FloatArray) -> FloatArray:
+    """Density of aqueous glycerol by mass fraction and temperature."""
     t = temperature - ZERO_CELSIUS
     water = 1000 * (1 - (np.abs(t - 3.98) / 615) ** 1.71)
     glycerol = 1273.3 - 0.6121 * t
@@ -95,6 +98,7 @@ def _volk_kaehler(mass_fraction: FloatArray, temperature: FloatArray) -> FloatAr
     "taken up from the air lowers the viscosity by a fifth: measure density and viscosity on the day.",
 )
 def _cheng(mass_fraction: FloatArray, temperature: FloatArray) -> FloatArray:
+    """Viscosity of aqueous glycerol by mass fraction and temperature."""
     t = temperature - ZERO_CELSIUS
     water = 1.790 * np.exp((-1230 - t) * t / (36100 + 360 * t))
     glycerol = 12100 * np.exp((-1233 + t) * t / (9900 + 70 * t))

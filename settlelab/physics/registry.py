@@ -7,6 +7,7 @@ signature, so that tables, tests and messages are all derived from it.
 from __future__ import annotations
 
 import inspect
+import re
 from collections.abc import Callable, Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from typing import Any, Generic, TypeVar
@@ -31,6 +32,16 @@ class Entry:
     where: str = ""  # equation, table, or the later work whose reading was taken
     note: str = ""  # what was taken where print and physics differ, and what to beware of
     confirmed: bool = True  # False: coefficients from memory or a single witness
+
+    @property
+    def purpose(self) -> str:
+        """What it gives, in one line: the first of the formula's docstring."""
+        return (inspect.getdoc(self.formula) or "").partition("\n")[0]
+
+    @property
+    def citation(self) -> str:
+        """Authors and year."""
+        return re.split(r"(?<=\d\)),", self.source)[0]
 
     @property
     def parameters(self) -> tuple[str, ...]:
@@ -76,8 +87,7 @@ E = TypeVar("E", bound=Entry)
 class Registry(Mapping[str, E], Generic[E]):
     """Published methods by name, in the order in which they were entered."""
 
-    def __init__(self, kind: str, entry: type[E]) -> None:
-        self._kind = kind
+    def __init__(self, entry: type[E]) -> None:
         self._entry = entry
         self._entries: dict[str, E] = {}
 
@@ -101,15 +111,17 @@ class Registry(Mapping[str, E], Generic[E]):
     def __len__(self) -> int:
         return len(self._entries)
 
-    def find(self, name: str) -> E:
-        """The method of that name.
 
-        Raises
-        ------
-        SettlelabError
-            No such method; the nearest name is offered.
-        """
-        if name not in self._entries:
-            hint = did_you_mean(name, self._entries)
-            raise SettlelabError(f'"{name}" is not a {self._kind} method on board{hint}; known: {", ".join(self)}')
-        return self._entries[name]
+def find(name: str, *registries: Mapping[str, Entry]) -> Entry:
+    """The method of that name in any of the registries.
+
+    Raises
+    ------
+    SettlelabError
+        No such method; the nearest name is offered.
+    """
+    known = {key: entry for registry in registries for key, entry in registry.items()}
+    if name not in known:
+        hint = did_you_mean(name, known) or f"; on board are {', '.join(known)}"
+        raise SettlelabError(f'"{name}" is not a published method on board{hint}')
+    return known[name]

@@ -22,7 +22,7 @@ class WallMethod(Entry):
     regime: str  # what it is made for
 
 
-WALLS: Registry[WallMethod] = Registry("wall", WallMethod)
+WALLS: Registry[WallMethod] = Registry(WallMethod)
 
 _CREEPING = (0.0, 0.1)
 _COMPUTED = "computed for this project's reference sheet"

@@ -15,7 +15,15 @@ from settlelab.physics.drag.nonnewtonian import (
     power_law_correction,
 )
 from settlelab.physics.drag.nonspherical import ganser_factors, scaled_drag
-from settlelab.physics.drag.registry import DESCRIPTORS, DRAG, Method, published, usable_methods
+from settlelab.physics.drag.registry import (
+    DERIVED,
+    DESCRIPTORS,
+    DRAG,
+    Method,
+    available_descriptors,
+    published,
+    usable_methods,
+)
 from settlelab.physics.drag.solver import (
     DragLaw,
     Settling,
@@ -26,11 +34,13 @@ from settlelab.physics.drag.solver import (
 
 __all__ = [
     "CRITICAL_YIELD_NUMBER",
+    "DERIVED",
     "DESCRIPTORS",
     "DRAG",
     "DragLaw",
     "Method",
     "Settling",
+    "available_descriptors",
     "creeping_correction",
     "drag_coefficient_from_velocity",
     "drag_in_fluid",

@@ -79,10 +79,11 @@ def _ganser_base(reynolds: FloatArray) -> FloatArray:
     "ganser-1993",
     source="Ganser (1993), Powder Technol. 77, 143-152",
     where="eq. 18, table 7, isometric particles",
-    valid={"reynolds": (0.0, 25_000.0), "sphericity": (0.26, 1.0)},
+    valid={"reynolds": (0.0, 2.5e4), "sphericity": (0.67, 1.0)},
     diameter="volume-equivalent",
     note="The wall term of K1 (-2.25 d/D) is left out: walls are corrected for apart, and never twice. The logarithm "
-    "in K2 is to base 10. At sphericity 1 it lies 15 to 26 % below the standard sphere curve at Re 10 to 1000.",
+    "in K2 is to base 10. The limit Re K1 K2 <= 1e5 stands here as Re <= 2.5e4, which keeps it down to sphericity 0.67, "
+    "that of the least round isometric body. At sphericity 1 it lies 15 to 26 % below the standard sphere curve at Re 10 to 1000.",
 )
 def ganser(reynolds: FloatArray, sphericity: FloatArray) -> FloatArray:
     """Drag coefficient of an isometric particle by sphericity: Stokes and Newton shape factors."""
@@ -143,7 +144,7 @@ def coelho_massarani(reynolds: FloatArray, sphericity: FloatArray) -> FloatArray
     valid={"reynolds": (0.0, 1e5), "corey_shape_factor": (0.2, 1.0)},
     diameter="volume-equivalent",
     note="Natural sediment, on the nominal diameter. At shape factor 1 a well-rounded grain, not a sphere "
-    "(27.9/Re in creeping flow). The stated range is that of its data, from memory.",
+    "(27.9/Re in creeping flow). The ranges are those of its data, from memory.",
 )
 def wu_wang(reynolds: FloatArray, corey_shape_factor: FloatArray) -> FloatArray:
     """Drag coefficient of natural sediment by the Corey shape factor."""
@@ -157,7 +158,7 @@ def wu_wang(reynolds: FloatArray, corey_shape_factor: FloatArray) -> FloatArray:
     "bagheri-bonadonna-2016",
     source="Bagheri & Bonadonna (2016), Powder Technol. 301, 526-544, doi 10.1016/j.powtec.2016.06.015",
     where="random orientation, volume taken as that of the ellipsoid of the three axes",
-    valid={"reynolds": (0.0, 3e5), "flatness": (0.0, 1.0), "elongation": (0.0, 1.0), "density_ratio": (1.0, 1e4)},
+    valid={"reynolds": (0.0, 3e5)},
     diameter="volume-equivalent",
     note="Irregular volcanic particles in air and liquids. Its exponents are read as exp(2.5 log r) + 30 and "
     "exp(3 log r) + 100: with the constants inside the exponential, as typeset, they would not depend on r. Logarithms "

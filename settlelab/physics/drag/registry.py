@@ -25,6 +25,17 @@ DESCRIPTORS = {
 }
 
 
+# Descriptors that follow from other measurements: the columns of a bench table that they need, by one route or another.
+_AXES = ("long_axis", "intermediate_axis", "short_axis")
+DERIVED = {
+    "sphericity": (_AXES,),  # as that of the ellipsoid
+    "corey_shape_factor": (_AXES,),
+    "flatness": (_AXES[1:],),
+    "elongation": (_AXES[:2],),
+    "density_ratio": (("density",), ("particle_density", "fluid_density")),
+}
+
+
 @dataclass(frozen=True, slots=True, kw_only=True)
 class Method(Entry):
     """A published drag law."""
@@ -49,8 +60,30 @@ class Method(Entry):
         return self.evaluate(reynolds=reynolds, **descriptors)
 
 
-DRAG: Registry[Method] = Registry("drag", Method)
+DRAG: Registry[Method] = Registry(Method)
 published = DRAG.published
+
+
+def available_descriptors(columns: Collection[str]) -> dict[str, str]:
+    """Descriptors that a bench table gives, and how each is found.
+
+    Parameters
+    ----------
+    columns : collection of str
+        Names of the columns that are filled in, such as `long_axis`. A particle table with `density` is taken to be
+        used with a fluid of known density.
+
+    Returns
+    -------
+    dict of str
+        Descriptor -> "typed", or the columns that it is computed from.
+    """
+    found = {name: "typed" for name in DESCRIPTORS if name in columns}
+    for name, routes in DERIVED.items():
+        for route in routes:
+            if all(column in columns for column in route):
+                found.setdefault(name, "from " + ", ".join(column.replace("_", " ") for column in route))
+    return found
 
 
 def usable_methods(available: Collection[str]) -> tuple[tuple[Method, ...], dict[str, str]]:
