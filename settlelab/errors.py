@@ -34,16 +34,16 @@ class Fault:
     file: Path
     found: str | None  # as it stands in the file; None where something is missing
     accepted: str
-    row: int | None = None  # as a spreadsheet counts: the heading is row 1
+    row: int | None = None  # as a spreadsheet counts: the heading is row 1; of a TOML file the line
     column: str | None = None
-    key: str | None = None  # dotted key of a TOML file
+    key: str | None = None  # section and key of a TOML file
 
     def __str__(self) -> str:
         place = [self.file.name]
-        if self.key is not None:
+        if self.key:
             place.append(self.key)
         if self.row is not None:
-            place.append(f"row {self.row}")
+            place.append(f"{'line' if self.file.suffix == '.toml' else 'row'} {self.row}")
         if self.column is not None:
             place.append(f'column "{self.column}"')
         what = "missing, expected" if self.found is None else f'"{self.found}" is not'

@@ -5,6 +5,7 @@ In: `study.toml`, CSV and XLSX tables. Out: `Study` (model.py). Every fault of a
 
 from __future__ import annotations
 
+from settlelab.study.reading import read_study
 from settlelab.study.table import Column, Table, read_table
 
-__all__ = ["Column", "Table", "read_table"]
+__all__ = ["Column", "Table", "read_study", "read_table"]

@@ -64,7 +64,7 @@ def read_particles(table: Table, faults: list[Fault]) -> tuple[tuple[Particle, .
         for index, name in enumerate(names)
         if name
     )
-    return particles, table.notes + notes + _without_uncertainty(table, measured)
+    return particles, table.notes + notes + _without_uncertainty(table, measured) + _unknown(table, particles)
 
 
 def _names(table: Table, faults: list[Fault]) -> tuple[str, ...] | None:
@@ -93,8 +93,7 @@ def _check_axes(table: Table, measured: dict[str, Cells], faults: list[Fault]) -
                 column, other = table.column(shorter), table.column(longer)
                 assert column is not None
                 assert other is not None
-                names = shorter.replace("_", " "), longer.replace("_", " ")
-                what = f'a {names[0]} of at most the {names[1]} ("{other.cells[index]}")'
+                what = f'an axis of at most the {longer.replace("_", " ")}, "{other.cells[index]}"'
                 faults.append(cell_fault(table, column, index, what))
 
 
@@ -120,6 +119,25 @@ def _as_typed(table: Table, column: Column, faults: list[Fault]) -> Cells:
     cells = read_quantities(replace(table, columns=(plain,)), column.name, "1", faults)
     assert cells is not None
     return cells
+
+
+def _unknown(table: Table, particles: tuple[Particle, ...]) -> tuple[str, ...]:
+    """What cannot be known of a particle, from what was not measured."""
+    notes = []
+    without_density = [particle.name for particle in particles if particle.density is None]
+    if without_density:
+        what = "gives no density, so no drag coefficient, for"
+        notes.append(f"{table.file.name}: {what} {', '.join(without_density)}")
+    without_size = [
+        particle.name
+        for particle in particles
+        if particle.diameter is None
+        and (particle.mass is None or particle.density is None)
+        and any(getattr(particle, axis) is None for axis in AXES)
+    ]
+    if without_size:
+        notes.append(f"{table.file.name}: gives no size for {', '.join(without_size)}; that of the silhouette is taken")
+    return tuple(notes)
 
 
 def _without_uncertainty(table: Table, measured: dict[str, Cells]) -> tuple[str, ...]:

@@ -7,7 +7,7 @@ columns name their unit.
 from __future__ import annotations
 
 from settlelab.units.headings import Heading, Unit, from_headings, heading, parse_heading, with_headings
-from settlelab.units.quantity import Quantity, parse_number, parse_quantity, uses_decimal_comma
+from settlelab.units.quantity import Quantity, parse_number, parse_quantity, uses_decimal_comma, wanted
 from settlelab.units.spelling import difference_to_si, from_si, si_unit, to_si, unit_known
 
 __all__ = [
@@ -25,5 +25,6 @@ __all__ = [
     "to_si",
     "unit_known",
     "uses_decimal_comma",
+    "wanted",
     "with_headings",
 ]

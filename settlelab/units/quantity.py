@@ -8,7 +8,7 @@ from dataclasses import dataclass
 
 from settlelab.units.spelling import REFUSED, SI, conversion
 
-__all__ = ["Quantity", "parse_number", "parse_quantity", "uses_decimal_comma"]
+__all__ = ["Quantity", "parse_number", "parse_quantity", "uses_decimal_comma", "wanted"]
 
 _NUMBER = r"[+-]?(?:\d[\d.,]*|[.,]\d+)(?:[eE][+-]?\d+)?"
 _TEXT = re.compile(
@@ -95,19 +95,19 @@ def parse_quantity(text: str, dimension: str, *, unit: str = "", decimal_comma: 
         tidy = f"{bracketed['inside']} {bracketed['after']}"
     match = _TEXT.fullmatch(tidy.strip())
     if match is None:
-        raise ValueError(_wanted(dimension))
+        raise ValueError(wanted(dimension))
     u_unit = match["u_unit"] or ""
     from_u = "" if unit and u_unit == "%" else u_unit  # 12.4 ± 1 % in a column in mg: relative
     unit = match["unit"] or from_u or unit
     if not unit and dimension != "1":
-        raise ValueError(f"{_wanted(dimension)} (its unit is missing)")
+        raise ValueError(f"{wanted(dimension)} (its unit is missing)")
     _must_fit(unit, dimension)
     way, si = conversion(unit), conversion(dimension)
     value = parse_number(match["value"], decimal_comma=decimal_comma)
     u = parse_number(match["u"], decimal_comma=decimal_comma) if match["u"] else 0.0
     k = parse_number(match["k"]) if match["k"] else 1.0
     if u < 0.0 or k <= 0.0:
-        raise ValueError(f"{_wanted(dimension)} (an uncertainty and its k are above 0)")
+        raise ValueError(f"{wanted(dimension)} (an uncertainty and its k are above 0)")
     in_si = (value * way.factor + way.offset) / si.factor
     return Quantity(in_si, _uncertainty(u, u_unit or unit, in_si, unit, dimension) / k)
 
@@ -116,7 +116,7 @@ def _uncertainty(u: float, u_unit: str, value: float, unit: str, dimension: str)
     """An uncertainty in SI: a difference, so no offset of temperatures; relative where only it is in percent."""
     if u_unit == "%" and unit != "%":
         if conversion(unit).offset:
-            raise ValueError(f"{_wanted(dimension)} (a temperature has no relative uncertainty)")
+            raise ValueError(f"{wanted(dimension)} (a temperature has no relative uncertainty)")
         return abs(value) * u * 0.01
     _must_fit(u_unit, dimension)
     return u * conversion(u_unit).factor / conversion(dimension).factor
@@ -127,11 +127,12 @@ def _must_fit(unit: str, dimension: str) -> None:
         fits = conversion(unit).dimension == conversion(dimension).dimension
     except ValueError as error:
         known = "" if unit in REFUSED else f"; known here: {', '.join(SI[dimension].units)}"
-        raise ValueError(f"{_wanted(dimension)} ({error}{known})") from error
+        raise ValueError(f"{wanted(dimension)} ({error}{known})") from error
     if not fits:
         units = ", ".join(SI[dimension].units)
-        raise ValueError(f'{_wanted(dimension)} (unit "{unit}" does not fit; known here: {units})')
+        raise ValueError(f'{wanted(dimension)} (unit "{unit}" does not fit; known here: {units})')
 
 
-def _wanted(dimension: str) -> str:
+def wanted(dimension: str) -> str:
+    """How a quantity of that SI unit is typed: `a length such as "12.4 ± 0.1 mm"`."""
     return f'{SI[dimension].name} such as "{SI[dimension].example}"'
