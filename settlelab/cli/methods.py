@@ -120,7 +120,7 @@ def _show_usable(path: Path) -> None:
     if left_out:
         click.echo("\nleft out\n")
         rows = [
-            (_starred(DRAG[name]), reason.replace("_", " "), _remedy(DRAG[name], known))
+            (_starred(DRAG[name]), " ".join(map(_spoken, reason.split())), _remedy(DRAG[name], known))
             for name, reason in left_out.items()
         ]
         _aligned([("name", "because it", "columns that would give it"), *rows])
@@ -131,12 +131,10 @@ def _remedy(method: Method, known: Collection[str]) -> str:
     """Which columns would make a law usable."""
     from settlelab.physics.drag import DERIVED
 
-    wanted = []
-    for need in method.needs:
-        if need not in known:
-            routes = [(need,), *DERIVED.get(need, ())]
-            wanted.append(" or ".join(", ".join(map(_spoken, route)) for route in routes))
-    return "; ".join(wanted)
+    missing = [need for need in method.needs if need not in known]
+    measured = dict.fromkeys(column for need in missing for column in DERIVED.get(need, ((need,),))[0])
+    columns = ", ".join(map(_spoken, measured))
+    return f"{_spoken(missing[0])}; or {columns}" if len(missing) == 1 else columns
 
 
 def _starred(entry: Entry) -> str:

@@ -25,13 +25,13 @@ DESCRIPTORS = {
 }
 
 
-# Descriptors that follow from other measurements: the columns of a bench table that they need, by one route or another.
+# Descriptors that follow from other measurements: columns of a bench table that give them, by one route or another.
 _AXES = ("long_axis", "intermediate_axis", "short_axis")
 DERIVED = {
     "sphericity": (_AXES,),  # as that of the ellipsoid
     "corey_shape_factor": (_AXES,),
-    "flatness": (_AXES[1:],),
-    "elongation": (_AXES[:2],),
+    "flatness": (_AXES,),
+    "elongation": (_AXES,),
     "density_ratio": (("density",), ("particle_density", "fluid_density")),
 }
 
