@@ -1,0 +1,197 @@
+"""The charts of the report: data in, axes out. Nothing is computed from physics or saved here.
+
+Colours and markers change together (see `drawing`), so every chart can be read in grey print. Lengths, velocities
+and uncertainties arrive in SI; bars are expanded uncertainties (k = 2).
+"""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import Any, Literal
+
+import numpy as np
+import pandas as pd
+from matplotlib.axes import Axes
+from matplotlib.ticker import FuncFormatter, NullFormatter
+from numpy.typing import NDArray
+
+from settlelab.report import drawing
+
+__all__ = ["DragCurve", "budget_bars", "drag_chart", "measured_against_predicted", "ranking_bars"]
+
+CURVE_STYLE: dict[str, dict[str, Any]] = {
+    "sphere": {"color": drawing.MUTED, "linestyle": "-", "linewidth": 1.2},
+    "published": {"color": drawing.INK, "linestyle": (0, (6, 3)), "linewidth": 1.4},
+    "calibrated": {"color": "#c0392b", "linestyle": "-", "linewidth": 2.0},
+}
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class DragCurve:
+    """A drag law drawn over the drops; reynolds and drag_coefficient are (N,)."""
+
+    label: str
+    kind: Literal["sphere", "published", "calibrated"]
+    reynolds: NDArray[np.float64]
+    drag_coefficient: NDArray[np.float64]
+
+
+def drag_chart(drops: pd.DataFrame, curves: Sequence[DragCurve], *, ax: Axes | None = None) -> Axes:
+    """Drag coefficient over Reynolds number of each accepted drop, control spheres hollow, with drag laws."""
+    ax = drawing.axes(ax, 7.0, 4.8)
+    for curve in curves:
+        ax.plot(curve.reynolds, curve.drag_coefficient, label=curve.label, zorder=1, **CURVE_STYLE[curve.kind])
+    used = drops[drops["accepted"].astype(bool)]
+    cuttings, controls = used[~used["control"].astype(bool)], used[used["control"].astype(bool)]
+    for lot, (colour, marker) in drawing.series(cuttings["lot"]).items():
+        _drops(ax, cuttings[cuttings["lot"] == lot], lot or "no lot", marker, {"color": colour, "mec": drawing.INK})
+    if len(controls):
+        _drops(ax, controls, "control spheres", "o", {"color": drawing.INK, "mfc": "white", "mec": drawing.INK})
+    ax.set(xscale="log", yscale="log", xlabel="Reynolds number", ylabel="drag coefficient (bars: k = 2)")
+    for axis in (ax.xaxis, ax.yaxis):
+        axis.set_major_formatter(FuncFormatter(lambda value, _: f"{value:g}"))
+        if _decades(axis.get_view_interval()) > 1.2:
+            axis.set_minor_formatter(NullFormatter())
+        else:
+            axis.set_minor_formatter(FuncFormatter(lambda value, _: f"{value:g}" if f"{value:.0e}"[0] in "235" else ""))
+    ax.grid(which="major", color=drawing.FAINT, linewidth=0.6)
+    _legend(ax)
+    return ax
+
+
+def _decades(interval: tuple[float, float]) -> float:
+    return float(np.log10(interval[1] / interval[0]))
+
+
+def _drops(ax: Axes, drops: pd.DataFrame, label: str, marker: str, colours: dict[str, Any]) -> None:
+    ax.errorbar(
+        drops["reynolds"],
+        drops["drag_coefficient"],
+        xerr=2 * drops["reynolds_u"],
+        yerr=2 * drops["drag_coefficient_u"],
+        fmt=marker,
+        label=label,
+        markersize=6,
+        mew=0.7,
+        elinewidth=0.9,
+        zorder=3,
+        **colours,
+    )
+
+
+def measured_against_predicted(pairs: pd.DataFrame, *, title: str = "", ax: Axes | None = None) -> Axes:
+    """Predicted over measured unbounded velocity of each drop, with the 1:1 and ±20 % lines.
+
+    `pairs` holds lot, measured, measured_u, predicted [m/s] and in_range; drops outside the method's range are hollow.
+    """
+    ax = drawing.axes(ax, 4.6, 4.6)
+    for ratio, style in ((1.0, "-"), (0.8, (0, (4, 3))), (1.2, (0, (4, 3)))):
+        ax.axline((0, 0), slope=ratio, color=drawing.MUTED, linestyle=style, linewidth=0.9, zorder=0)
+    for lot, (colour, marker) in drawing.series(pairs["lot"]).items():
+        for inside in (True, False):
+            some = pairs[(pairs["lot"] == lot) & (pairs["in_range"].astype(bool) == inside)]
+            if len(some) == 0:
+                continue
+            ax.errorbar(
+                1e3 * some["measured"],
+                1e3 * some["predicted"],
+                xerr=2e3 * some["measured_u"],
+                fmt=marker,
+                color=colour,
+                mfc=colour if inside else "white",
+                mec=drawing.INK if inside else colour,
+                mew=0.7 if inside else 1.3,
+                markersize=6,
+                elinewidth=0.9,
+                label=(lot or "no lot") if inside else None,
+            )
+    if not pairs["in_range"].astype(bool).all():
+        ax.plot([], [], "o", mfc="white", mec=drawing.INK, label="hollow: outside the method's range")
+    top = 1.12e3 * np.nanmax([pairs["measured"].max(), pairs["predicted"].max()]) if len(pairs) else 1.0
+    ax.set(xlim=(0, top), ylim=(0, top), aspect="equal", title=title)
+    ax.set(xlabel="measured velocity, mm/s (bars: k = 2)", ylabel="predicted velocity, mm/s")
+    ax.title.set(fontsize=10, color=drawing.INK)
+    ax.annotate("+20 %", (top / 1.2, top), ha="right", va="top", fontsize=8, color=drawing.MUTED)
+    ax.annotate("−20 %", (top, top * 0.8), ha="right", va="top", fontsize=8, color=drawing.MUTED)
+    _legend(ax)
+    return ax
+
+
+def ranking_bars(ranking: pd.DataFrame, *, ax: Axes | None = None) -> Axes:
+    """Root mean square deviation in velocity of each method, best on top, with its bias as a mark.
+
+    `ranking` has the columns of ranking.csv; calibrated forms are solid and show their cross-validated figure as well.
+    """
+    rows = ranking.sort_values("rms_percent", ascending=False)
+    ax = drawing.axes(ax, 7.0, 0.9 + 0.32 * max(len(rows), 1))
+    calibrated = (rows["kind"] == "calibrated").to_numpy()
+    place = np.arange(len(rows))
+    ax.barh(place[~calibrated], rows["rms_percent"][~calibrated], color="#c9d3de", edgecolor=drawing.INK, linewidth=0.6)
+    ax.barh(place[calibrated], rows["rms_percent"][calibrated], color="#17375e", edgecolor=drawing.INK, linewidth=0.6)
+    ax.plot(rows["bias_percent"].abs(), place, "|", color="#c8642b", ms=11, mew=2.2, label="bias, without its sign")
+    if calibrated.any():
+        ax.plot(
+            rows["cv_rms_percent"][calibrated],
+            place[calibrated],
+            "D",
+            mfc="white",
+            mec=drawing.INK,
+            ms=5.5,
+            label="cross-validated",
+        )
+    ax.set_yticks(
+        place, [f"{rms:.1f} %   {name}" for name, rms in zip(rows["method"], rows["rms_percent"], strict=True)]
+    )
+    ax.set(xlabel="deviation in velocity, % (bars: root mean square)", xlim=(0, None))
+    ax.spines["left"].set_visible(False)
+    ax.tick_params(axis="y", length=0)
+    _legend(ax)
+    return ax
+
+
+def budget_bars(shares: pd.DataFrame, *, ax: Axes | None = None) -> Axes:
+    """Where the variance of each output comes from: one stacked bar per row, its columns the inputs, shares 0 to 1."""
+    ax = drawing.axes(ax, 7.0, 1.2 + 0.55 * max(len(shares), 1))
+    left = np.zeros(len(shares))
+    place = np.arange(len(shares))[::-1]
+    for index, name in enumerate(shares.columns):
+        colour, hatch = _stack_style(index)
+        share = 100 * shares[name].to_numpy(dtype=np.float64)
+        ax.barh(place, share, left=left, color=colour, hatch=hatch, edgecolor="white", linewidth=0.8, label=name)
+        for bar, value, start in zip(place, share, left, strict=True):
+            if value >= 6:
+                ax.text(
+                    start + value / 2,
+                    bar,
+                    f"{name} {value:.0f}" if value >= 15 else f"{value:.0f}",
+                    ha="center",
+                    va="center",
+                    fontsize=8,
+                    color=drawing.INK,
+                    bbox={"facecolor": "white", "edgecolor": "none", "pad": 1.2},
+                )
+        left += share
+    ax.set_yticks(place, shares.index)
+    ax.set(xlabel="share of the variance, % (mean over accepted drops)", xlim=(0, 100))
+    ax.spines["left"].set_visible(False)
+    ax.tick_params(axis="y", length=0)
+    ax.legend(
+        fontsize=8,
+        frameon=False,
+        ncols=4,
+        loc="lower center",
+        bbox_to_anchor=(0.5, 1.0),
+        labelcolor=drawing.INK,
+    )
+    return ax
+
+
+def _stack_style(index: int) -> tuple[str, str]:
+    colour = drawing.SERIES[index % len(drawing.SERIES)][0]
+    return colour, ("", "////", "....")[index // len(drawing.SERIES) % 3]
+
+
+def _legend(ax: Axes) -> None:
+    if ax.get_legend_handles_labels()[0]:
+        ax.legend(fontsize=8, frameon=True, framealpha=0.9, edgecolor="none", labelcolor=drawing.INK)
