@@ -5,7 +5,21 @@ In: `study.toml`, CSV and XLSX tables. Out: `Study` (model.py). Every fault of a
 
 from __future__ import annotations
 
+from settlelab.study.columns import Cells, read_quantities
+from settlelab.study.model import Study
+from settlelab.study.new import new_study
 from settlelab.study.reading import read_study
+from settlelab.study.summary import study_summary
 from settlelab.study.table import Column, Table, read_table
 
-__all__ = ["Column", "Table", "read_study", "read_table"]
+__all__ = [
+    "Cells",
+    "Column",
+    "Study",
+    "Table",
+    "new_study",
+    "read_quantities",
+    "read_study",
+    "read_table",
+    "study_summary",
+]

@@ -10,7 +10,7 @@ from settlelab.study.model import Fluid, ViscometerReadings
 from settlelab.study.source import Section, Source
 from settlelab.study.table import scan_table
 from settlelab.study.viscometer import read_viscometer
-from settlelab.units import wanted
+from settlelab.units import show, wanted
 
 __all__ = ["read_fluids"]
 
@@ -77,8 +77,7 @@ def _check_needs(source: Source, section: Section[FluidKeys], liquid: str) -> No
         try:
             WATER.check(keys.temperature, "K")
         except ValueError as error:
-            celsius = f"{keys.temperature.value - 273.15:.4g} °C"
-            source.fault(f"{place}, temperature", celsius, str(error))
+            source.fault(f"{place}, temperature", show(keys.temperature, "°C"), str(error))
 
 
 def _check_flow_curve(source: Source, section: Section[FluidKeys]) -> None:

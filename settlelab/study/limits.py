@@ -5,12 +5,11 @@ from __future__ import annotations
 import math
 from dataclasses import dataclass
 
+from settlelab.physics.constants import ZERO_CELSIUS
 from settlelab.units import Quantity
 from settlelab.units.spelling import SI
 
 __all__ = ["ABOVE_ZERO", "FRACTION", "INDEX", "LIQUID", "NOT_NEGATIVE", "SHAPE", "WATER", "Limits"]
-
-ZERO_CELSIUS = 273.15
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

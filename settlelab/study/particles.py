@@ -6,6 +6,8 @@ from dataclasses import replace
 from itertools import pairwise
 from typing import Any
 
+import numpy as np
+
 from settlelab.errors import Fault
 from settlelab.study.columns import Cells, cell_fault, is_numeric, near_heading, read_quantities
 from settlelab.study.limits import ABOVE_ZERO, SHAPE, Limits
@@ -141,13 +143,19 @@ def _unknown(table: Table, particles: tuple[Particle, ...]) -> tuple[str, ...]:
 
 
 def _without_uncertainty(table: Table, measured: dict[str, Cells]) -> tuple[str, ...]:
-    """One sentence for each column in which cells state no uncertainty."""
-    notes = []
+    """A sentence for the columns that state no uncertainty at all, and one for each that lacks it in some rows."""
+    notes, never = [], []
     for name, cells in measured.items():
-        without = int((cells.u == 0.0).sum())
-        if without:
-            column = table.column(name)
-            assert column is not None
-            rows = "no uncertainty" if without == len(table.rows) else f"no uncertainty in {without} of its rows"
-            notes.append(f'{table.file.name}: column "{column.heading}" states {rows}; taken as 0')
+        without = [row for row, u in zip(table.rows, cells.u, strict=True) if u == 0.0]
+        column = table.column(name)
+        assert column is not None
+        if without and len(without) == int(np.isfinite(cells.value).sum()):
+            never.append(f'"{column.heading}"')
+        elif without:
+            rows = ", ".join(map(str, without))
+            notes.append(
+                f'{table.file.name}: column "{column.heading}" states no uncertainty in row {rows}; taken as 0'
+            )
+    if never:
+        notes.insert(0, f"{table.file.name}: no uncertainty is stated for {', '.join(never)}; taken as 0")
     return tuple(notes)

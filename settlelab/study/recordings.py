@@ -15,7 +15,7 @@ from settlelab.units import wanted
 
 __all__ = ["read_recordings"]
 
-PICTURES = frozenset({".png", ".jpg", ".jpeg", ".tif", ".tiff", ".bmp"})
+PICTURES = frozenset({".png", ".tif", ".tiff"})
 
 
 def read_recordings(

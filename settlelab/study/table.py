@@ -89,11 +89,13 @@ def scan_table(path: Path) -> tuple[Table | None, list[Fault]]:
         records, delimiter, notes = _records(path)
     except InputFaults as error:
         return None, list(error.faults)
-    if len(records) < 2:
-        return None, [Fault(file=path, found=None, accepted="a row of headings and at least one row below it")]
+    if not records:
+        return None, [Fault(file=path, found=None, accepted="a row of headings and rows below it")]
     width = max((i + 1 for i, cell in enumerate(records[0].cells) if cell), default=0)
     usable, faults = _of_width(records, width, path)
     columns, rows, more = _columns(usable, path)
+    if not rows and not faults:
+        more.append(Fault(file=path, row=records[-1].row + 1, found=None, accepted="a row below the headings"))
     numbers = [part.strip() for column in columns for cell in column.cells for part in _PLUS_MINUS.split(cell)]
     comma = any(map(uses_decimal_comma, numbers)) or (
         delimiter == ";" and any(re.fullmatch(r"[+-]?\d+,\d+", number) for number in numbers)

@@ -7,7 +7,7 @@ columns name their unit.
 from __future__ import annotations
 
 from settlelab.units.headings import Heading, Unit, from_headings, heading, parse_heading, with_headings
-from settlelab.units.quantity import Quantity, parse_number, parse_quantity, uses_decimal_comma, wanted
+from settlelab.units.quantity import Quantity, parse_number, parse_quantity, show, uses_decimal_comma, wanted
 from settlelab.units.spelling import difference_to_si, from_si, si_unit, to_si, unit_known
 
 __all__ = [
@@ -21,6 +21,7 @@ __all__ = [
     "parse_heading",
     "parse_number",
     "parse_quantity",
+    "show",
     "si_unit",
     "to_si",
     "unit_known",

@@ -8,7 +8,7 @@ from dataclasses import dataclass
 
 from settlelab.units.spelling import REFUSED, SI, conversion
 
-__all__ = ["Quantity", "parse_number", "parse_quantity", "uses_decimal_comma", "wanted"]
+__all__ = ["Quantity", "parse_number", "parse_quantity", "show", "uses_decimal_comma", "wanted"]
 
 _NUMBER = r"[+-]?(?:\d[\d.,]*|[.,]\d+)(?:[eE][+-]?\d+)?"
 _TEXT = re.compile(
@@ -131,6 +131,17 @@ def _must_fit(unit: str, dimension: str) -> None:
     if not fits:
         units = ", ".join(SI[dimension].units)
         raise ValueError(f'{wanted(dimension)} (unit "{unit}" does not fit; known here: {units})')
+
+
+def show(quantity: Quantity, unit: str) -> str:
+    """A quantity as text in a unit, its uncertainty to two significant digits: `190.00 ± 0.50 mm`."""
+    way = conversion(unit)
+    value, u = (quantity.value - way.offset) / way.factor, quantity.u / way.factor
+    suffix = "" if unit == "1" else f" {unit}"
+    if u <= 0.0:
+        return f"{value:.6g}{suffix}"
+    decimals = max(1 - int(f"{u:.1e}".partition("e")[2]), 0)
+    return f"{value:.{decimals}f} ± {u:.{decimals}f}{suffix}"
 
 
 def wanted(dimension: str) -> str:
