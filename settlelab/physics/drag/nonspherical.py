@@ -81,9 +81,10 @@ def _ganser_base(reynolds: FloatArray) -> FloatArray:
     where="eq. 18, table 7, isometric particles",
     valid={"reynolds": (0.0, 2.5e4), "sphericity": (0.67, 1.0)},
     diameter="volume-equivalent",
-    note="The wall term of K1 (-2.25 d/D) is left out: walls are corrected for apart, and never twice. The logarithm in "
-    "K2 is to base 10. The limit Re K1 K2 <= 1e5 stands here as Re <= 2.5e4, which keeps it down to sphericity 0.67, "
-    "that of the least round isometric body. At sphericity 1 it lies 15 to 26 % below the standard sphere curve at Re 10 to 1000.",
+    note="The wall term of K1 (-2.25 d/D) is left out: walls are corrected for apart, and never twice. The logarithm "
+    "in K2 is to base 10. The limit Re K1 K2 <= 1e5 stands here as Re <= 2.5e4, which keeps it down to sphericity "
+    "0.67, that of the least round isometric body. At sphericity 1 it lies 15 to 26 % below the standard sphere curve "
+    "at Re 10 to 1000.",
 )
 def ganser(reynolds: FloatArray, sphericity: FloatArray) -> FloatArray:
     """Drag coefficient of an isometric particle by sphericity: Stokes and Newton shape factors."""

@@ -15,7 +15,7 @@ from settlelab.physics.roots import bracketed_root
 
 DragLaw = Callable[[FloatArray], FloatArray]
 
-_LOWEST, _CRISIS, _HIGHEST = 1e-25, 3.37e5, 1e8  # Reynolds numbers between which the answer is looked for
+_LOWEST, _CRISIS, _HIGHEST = 1e-100, 3.37e5, 1e8  # Reynolds numbers between which the answer is looked for
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -68,7 +68,7 @@ def terminal_velocity(
     -------
     Settling
         (N,) arrays. Where the yield stress holds the particle, and for equal densities, the velocity is 0.
-        Solutions are sought at Reynolds numbers from 1e-25 to 1e8; nan in gives nan out.
+        Solutions are sought at Reynolds numbers from 1e-100 to 1e8; nan in gives nan out.
 
     Raises
     ------

@@ -63,6 +63,7 @@ def clift_gauvin(reynolds: FloatArray) -> FloatArray:
 def clift_grace_weber(reynolds: FloatArray) -> FloatArray:
     """Drag coefficient of a sphere: the recommended standard drag curve."""
     w = np.log10(reynolds)
+    v = np.clip(w, 2, 6)  # the polynomials run away far outside their segments
     upper = np.array([0.01, 20, 260, 1500, 1.2e4, 4.4e4, 3.38e5, 4e5, 1e6])
     segment = np.digitize(reynolds, upper, right=True)
     value = np.select(
@@ -71,10 +72,10 @@ def clift_grace_weber(reynolds: FloatArray) -> FloatArray:
             3 / 16 + 24 / reynolds,
             24 / reynolds * (1 + 0.1315 * reynolds ** (0.82 - 0.05 * w)),
             24 / reynolds * (1 + 0.1935 * reynolds**0.6305),
-            10 ** np.polyval([0.1558, -1.1242, 1.6435], w),
-            10 ** np.polyval([0.1049, -0.9295, 2.5558, -2.4571], np.minimum(w, 5)),
-            10 ** np.polyval([-0.0636, 0.6370, -1.9181], w),
-            10 ** np.polyval([-0.1546, 1.5809, -4.3390], w),
+            10 ** np.polyval([0.1558, -1.1242, 1.6435], v),
+            10 ** np.polyval([0.1049, -0.9295, 2.5558, -2.4571], v),
+            10 ** np.polyval([-0.0636, 0.6370, -1.9181], v),
+            10 ** np.polyval([-0.1546, 1.5809, -4.3390], v),
             29.78 - 5.3 * w,
             0.1 * w - 0.49,
             0.19 - 8e4 / reynolds,
