@@ -40,7 +40,7 @@ def command(study: Path, stills: Path | None) -> None:
     if unreadable:
         raise SettlelabError("\n".join(unreadable))
     drops = sum(len(recording.particles) for recording in checked.recordings)
-    click.echo(f"\nready: settlelab run {study} would follow {drops} drops in {len(checked.recordings)} recordings")
+    click.echo(f"\nready: settlelab run {study} (recordings: {len(checked.recordings)}, drops: {drops})")
 
 
 def _open(study: Study, stills: Path | None) -> tuple[list[str], list[str]]:

@@ -152,10 +152,8 @@ def _without_uncertainty(table: Table, measured: dict[str, Cells]) -> tuple[str,
         if without and len(without) == int(np.isfinite(cells.value).sum()):
             never.append(f'"{column.heading}"')
         elif without:
-            rows = ", ".join(map(str, without))
-            notes.append(
-                f'{table.file.name}: column "{column.heading}" states no uncertainty in row {rows}; taken as 0'
-            )
+            where = f'column "{column.heading}", row {", ".join(map(str, without))}'
+            notes.append(f"{table.file.name}, {where}: no uncertainty is stated; taken as 0")
     if never:
         notes.insert(0, f"{table.file.name}: no uncertainty is stated for {', '.join(never)}; taken as 0")
     return tuple(notes)

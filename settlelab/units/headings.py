@@ -33,7 +33,7 @@ class Heading(NamedTuple):
     is_uncertainty: bool
 
 
-_WITH_UNIT = re.compile(r"(?P<name>[^\[\]]*?)\s*(?:\[(?P<square>[^\[\]]*)\]|\((?P<round>[^()]*)\))")
+_WITH_UNIT = re.compile(r"(?P<name>[^\[\]]*?)\s*/?\s*(?:\[(?P<square>[^\[\]]*)\]|\((?P<round>[^()]*)\))")
 _UNCERTAINTY = re.compile(r"(?P<letter>[uU])\s*\((?P<name>[^()]*)\)\s*(?P<rest>.*)")
 
 

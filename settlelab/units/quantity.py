@@ -83,14 +83,14 @@ def parse_quantity(text: str, dimension: str, *, unit: str = "", decimal_comma: 
     unit : str
         Unit of a text that names none: that of the column heading.
     decimal_comma : bool
-        See `parse_number`.
+        See `parse_number`; known as well where value or uncertainty show it: `1,006 ± 0,0005 g/cm3`.
 
     Raises
     ------
     ValueError
         What would be accepted, as text that follows "is not": `a length such as "12.4 ± 0.1 mm"`.
     """
-    tidy = _PLUS_MINUS.sub("±", text.strip().replace("\N{NO-BREAK SPACE}", " "))
+    tidy = _PLUS_MINUS.sub("±", text.strip().replace("\N{NO-BREAK SPACE}", " ").replace("−", "-"))
     if bracketed := _BRACKETED.fullmatch(tidy):
         tidy = f"{bracketed['inside']} {bracketed['after']}"
     match = _TEXT.fullmatch(tidy.strip())
@@ -103,6 +103,7 @@ def parse_quantity(text: str, dimension: str, *, unit: str = "", decimal_comma: 
         raise ValueError(f"{wanted(dimension)} (its unit is missing)")
     _must_fit(unit, dimension)
     way, si = conversion(unit), conversion(dimension)
+    decimal_comma = decimal_comma or any(uses_decimal_comma(number) for number in match.group("value", "u") if number)
     value = parse_number(match["value"], decimal_comma=decimal_comma)
     u = parse_number(match["u"], decimal_comma=decimal_comma) if match["u"] else 0.0
     k = parse_number(match["k"]) if match["k"] else 1.0
