@@ -59,17 +59,11 @@ def read_quantities(
     if unfit:
         faults.extend(heading_fault(table, each, why) for each, why in unfit)
         return Cells(value, u)
+    reader = _Reader(table, column, spread, dimension, limits)
     for index in range(len(table.rows)):
-        if not column.cells[index] and not (spread and spread.cells[index]):
-            continue
-        try:
-            quantity = _quantity(table, column, spread, dimension, index)
-            if limits is not None:
-                limits.check(quantity, dimension)
-        except ValueError as error:
-            faults.append(cell_fault(table, column, index, str(error)))
-            continue
-        value[index], u[index] = quantity.value, quantity.u
+        quantity = reader.read(index, faults)
+        if quantity is not None:
+            value[index], u[index] = quantity.value, quantity.u
     return Cells(value, u)
 
 
@@ -106,25 +100,54 @@ def cell_fault(table: Table, column: Column, index: int, accepted: str) -> Fault
     return Fault(file=table.file, row=table.rows[index], column=column.heading, found=found, accepted=accepted)
 
 
-def _quantity(table: Table, column: Column, spread: Column | None, dimension: str, index: int) -> Quantity:
-    """One cell with the uncertainty that stands in it or in the `u(...)` column."""
-    u_text = spread.cells[index] if spread else ""
-    if not column.cells[index]:
-        raise ValueError(f"a value to the uncertainty {u_text} beside it")
-    cell = parse_quantity(column.cells[index], dimension, unit=column.unit or "", decimal_comma=table.decimal_comma)
-    if spread is None or not u_text:
-        return cell
-    if cell.u:
-        raise ValueError(f'with one uncertainty: another one, {u_text}, stands in column "{spread.heading}"')
-    try:
-        number = parse_number(u_text, decimal_comma=table.decimal_comma)
-    except ValueError as error:
-        raise ValueError(f'beside a readable uncertainty: "{u_text}" is not {error}') from error
-    if number < 0.0:
-        raise ValueError(f"beside an uncertainty of 0 or above: {u_text} is less")
-    if spread.unit == "%" and column.unit != "%":
-        return Quantity(cell.value, abs(cell.value) * number * 0.01)
-    return Quantity(cell.value, float(difference_to_si(number, spread.unit or column.unit or "1")))
+@dataclass(frozen=True, slots=True)
+class _Reader:
+    """Reads the cells of a column together with those of its `u(...)` column."""
+
+    table: Table
+    column: Column
+    spread: Column | None
+    dimension: str
+    limits: Limits | None
+
+    def read(self, index: int, faults: list[Fault]) -> Quantity | None:
+        """One row; None where there is nothing or a fault, which is added to `faults`."""
+        u_text = self.spread.cells[index] if self.spread is not None else ""
+        if not self.column.cells[index]:
+            if u_text:
+                faults.append(
+                    cell_fault(self.table, self.column, index, f"a value to the uncertainty {u_text} beside it")
+                )
+            return None
+        at = self.column
+        try:
+            quantity = self._value(index)
+            if self.spread is not None and u_text:
+                at = self.spread
+                quantity = Quantity(quantity.value, self._u(u_text, quantity))
+                at = self.column
+            if self.limits is not None:
+                self.limits.check(quantity, self.dimension)
+        except ValueError as error:
+            faults.append(cell_fault(self.table, at, index, str(error)))
+            return None
+        return quantity
+
+    def _value(self, index: int) -> Quantity:
+        text, unit = self.column.cells[index], self.column.unit or ""
+        return parse_quantity(text, self.dimension, unit=unit, decimal_comma=self.table.decimal_comma)
+
+    def _u(self, text: str, quantity: Quantity) -> float:
+        """An uncertainty in SI; in percent of the value where only the `u(...)` column is in percent."""
+        assert self.spread is not None
+        number = parse_number(text, decimal_comma=self.table.decimal_comma)
+        if quantity.u:
+            raise ValueError(f'the only uncertainty: another one stands in column "{self.column.heading}"')
+        if number < 0.0:
+            raise ValueError("an uncertainty of 0 or above")
+        if self.spread.unit == "%" and self.column.unit != "%":
+            return abs(quantity.value) * number * 0.01
+        return float(difference_to_si(number, self.spread.unit or self.column.unit or "1"))
 
 
 def _unfit(table: Table, column: Column, dimension: str) -> str:

@@ -178,7 +178,7 @@ def _columns(records: list[_Record], path: Path) -> tuple[tuple[Column, ...], tu
         try:
             name, unit, is_uncertainty = _heading(typed, units[index])
         except ValueError as error:
-            faults.append(Fault(file=path, row=head.row, found=typed, accepted=str(error)))
+            faults.append(Fault(file=path, row=head.row, found=typed or None, accepted=str(error)))
             continue
         if any((name, is_uncertainty) == (other.name, other.is_uncertainty) for other in columns):
             faults.append(Fault(file=path, row=head.row, found=typed, accepted="a heading that stands only once"))
