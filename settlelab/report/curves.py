@@ -2,44 +2,57 @@
 
 from __future__ import annotations
 
-from typing import TYPE_CHECKING
+from typing import TYPE_CHECKING, Literal
 
 import numpy as np
 import pandas as pd
 
-from settlelab.physics.drag import DRAG
+from settlelab.physics.constants import FloatArray
+from settlelab.physics.drag import DRAG, Method
 from settlelab.report.figures import DragCurve
 
 if TYPE_CHECKING:
-    from settlelab.calibrate import Calibration
+    from settlelab.calibrate import CalibratedFit, Calibration
 
 __all__ = ["drag_curves"]
 
 STANDARD_CURVE = "clift-grace-weber-1978"  # of the sphere
 POINTS = 200
+BEYOND = 1.5  # factor by which a curve reaches beyond the drops
 
 
 def drag_curves(drops: pd.DataFrame, calibration: Calibration | None) -> list[DragCurve]:
-    """The standard curve of the sphere and, at the median shape of the accepted cuttings, the best published law.
+    """The standard curve of the sphere, and for each lot of accepted cuttings the two laws of the calibration.
 
-    The curves reach a little beyond the Reynolds numbers of the accepted drops.
+    These are the best published one and the chosen form, at the median shape of the lot, a little beyond the Reynolds
+    numbers of its drops.
     """
     used = drops[drops["accepted"].astype(bool)]
-    reynolds = np.geomspace(used["reynolds"].min() / 2, used["reynolds"].max() * 2, POINTS)
+    reynolds = _reach(used)
     sphere = DRAG[STANDARD_CURVE].drag_coefficient(reynolds)
-    curves = [DragCurve(label="sphere", kind="sphere", reynolds=reynolds, drag_coefficient=sphere)]
-    cuttings = used[~used["control"].astype(bool)]
-    if calibration is None or len(cuttings) == 0:
+    curves = [DragCurve(label="sphere", kind="sphere", lot=None, reynolds=reynolds, drag_coefficient=sphere)]
+    if calibration is None:
         return curves
-    method = DRAG[calibration.best_published]
-    shape = median_shape(cuttings, method.needs)
-    told = ", ".join(f"{name.replace('_', ' ')} {value:.2f}" for name, value in shape.items())
-    label = f"{method.name} at {told}" if told else method.name
-    drag = method.drag_coefficient(reynolds, **shape)
-    return [*curves, DragCurve(label=label, kind="published", reynolds=reynolds, drag_coefficient=drag)]
+    for lot, own in used[~used["control"].astype(bool)].groupby("lot", sort=True):
+        curves.append(_curve(DRAG[calibration.best_published], "published", str(lot), own))
+        if calibration.chosen is not None:
+            curves.append(_curve(calibration.chosen, "calibrated", str(lot), own))
+    return curves
 
 
-def median_shape(drops: pd.DataFrame, needs: tuple[str, ...]) -> dict[str, float]:
-    """Median of each descriptor that a law needs."""
+def _reach(drops: pd.DataFrame) -> FloatArray:
+    return np.geomspace(drops["reynolds"].min() / BEYOND, drops["reynolds"].max() * BEYOND, POINTS)
+
+
+def _curve(
+    law: Method | CalibratedFit, kind: Literal["published", "calibrated"], lot: str, drops: pd.DataFrame
+) -> DragCurve:
+    """A law at the median shape of a lot's drops; a form with a coefficient for each lot takes that of the lot."""
     known = drops.assign(density_ratio=drops["particle_density"] / drops["fluid_density"])
-    return {name: float(known[name].median()) for name in needs}
+    needs = law.needs if isinstance(law, Method) else law.form.needs
+    shape = {name: float(known[name].median()) for name in needs if name != "lot"}
+    if not isinstance(law, Method) and "lot" in needs:
+        shape["lot"] = float(law.form.recipe.lots.index(lot))
+    reynolds = _reach(drops)
+    drag = np.asarray(law.drag_coefficient(reynolds, **shape)) * np.ones_like(reynolds)
+    return DragCurve(label=law.name, kind=kind, lot=lot, reynolds=reynolds, drag_coefficient=drag)

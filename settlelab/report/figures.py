@@ -13,26 +13,29 @@ from typing import Any, Literal
 import numpy as np
 import pandas as pd
 from matplotlib.axes import Axes
-from matplotlib.ticker import FuncFormatter, NullFormatter
+from matplotlib.axis import Axis
+from matplotlib.ticker import FuncFormatter
 from numpy.typing import NDArray
 
 from settlelab.report import drawing
 
 __all__ = ["DragCurve", "budget_bars", "drag_chart", "measured_against_predicted", "ranking_bars"]
 
+LEFT_OUT = "on particles left out of the fit"
 CURVE_STYLE: dict[str, dict[str, Any]] = {
-    "sphere": {"color": drawing.MUTED, "linestyle": "-", "linewidth": 1.2},
-    "published": {"color": drawing.INK, "linestyle": (0, (6, 3)), "linewidth": 1.4},
-    "calibrated": {"color": "#c0392b", "linestyle": "-", "linewidth": 2.0},
+    "sphere": {"linestyle": "-", "linewidth": 1.2},
+    "published": {"linestyle": (0, (5, 3)), "linewidth": 1.3},
+    "calibrated": {"linestyle": "-", "linewidth": 1.8},
 }
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class DragCurve:
-    """A drag law drawn over the drops; reynolds and drag_coefficient are (N,)."""
+    """A drag law drawn with the drops of a lot, or with all; reynolds and drag_coefficient are (N,)."""
 
     label: str
     kind: Literal["sphere", "published", "calibrated"]
+    lot: str | None  # whose colour it takes
     reynolds: NDArray[np.float64]
     drag_coefficient: NDArray[np.float64]
 
@@ -40,28 +43,35 @@ class DragCurve:
 def drag_chart(drops: pd.DataFrame, curves: Sequence[DragCurve], *, ax: Axes | None = None) -> Axes:
     """Drag coefficient over Reynolds number of each accepted drop, control spheres hollow, with drag laws."""
     ax = drawing.axes(ax, 7.0, 4.8)
-    for curve in curves:
-        ax.plot(curve.reynolds, curve.drag_coefficient, label=curve.label, zorder=1, **CURVE_STYLE[curve.kind])
     used = drops[drops["accepted"].astype(bool)]
     cuttings, controls = used[~used["control"].astype(bool)], used[used["control"].astype(bool)]
-    for lot, (colour, marker) in drawing.series(cuttings["lot"]).items():
+    styles = drawing.series(cuttings["lot"])
+    for lot, (colour, marker) in styles.items():
         _drops(ax, cuttings[cuttings["lot"] == lot], lot or "no lot", marker, {"color": colour, "mec": drawing.INK})
     if len(controls):
         _drops(ax, controls, "control spheres", "o", {"color": drawing.INK, "mfc": "white", "mec": drawing.INK})
+    for curve in curves:
+        colour = drawing.MUTED if curve.lot is None else styles[curve.lot][0]
+        ax.plot(curve.reynolds, curve.drag_coefficient, color=colour, zorder=1, **CURVE_STYLE[curve.kind])
+    for kind, label in {curve.kind: curve.label for curve in curves}.items():
+        whose = "" if kind == "sphere" else ", at each lot's median shape"
+        colour = drawing.MUTED if kind == "sphere" else drawing.INK
+        ax.plot([], [], color=colour, label=f"{label}{whose}", **CURVE_STYLE[kind])
     ax.set(xscale="log", yscale="log", xlabel="Reynolds number", ylabel="drag coefficient (bars: k = 2)")
     for axis in (ax.xaxis, ax.yaxis):
-        axis.set_major_formatter(FuncFormatter(lambda value, _: f"{value:g}"))
-        if _decades(axis.get_view_interval()) > 1.2:
-            axis.set_minor_formatter(NullFormatter())
-        else:
-            axis.set_minor_formatter(FuncFormatter(lambda value, _: f"{value:g}" if f"{value:.0e}"[0] in "235" else ""))
+        _plain_decades(axis)
     ax.grid(which="major", color=drawing.FAINT, linewidth=0.6)
     _legend(ax)
     return ax
 
 
-def _decades(interval: tuple[float, float]) -> float:
-    return float(np.log10(interval[1] / interval[0]))
+def _plain_decades(axis: Axis) -> None:
+    """Ticks of a logarithmic axis as plain numbers, those between the decades where there is room for them."""
+    low, high = axis.get_view_interval()
+    between = "25" if high < 1000 * low else ""
+    axis.set_major_formatter(FuncFormatter(lambda value, _: f"{value:g}"))
+    axis.set_minor_formatter(FuncFormatter(lambda value, _: f"{value:g}" if f"{value:.0e}"[0] in between else ""))
+    axis.set_tick_params(which="minor", labelsize=8)
 
 
 def _drops(ax: Axes, drops: pd.DataFrame, label: str, marker: str, colours: dict[str, Any]) -> None:
@@ -119,31 +129,28 @@ def measured_against_predicted(pairs: pd.DataFrame, *, title: str = "", ax: Axes
 
 
 def ranking_bars(ranking: pd.DataFrame, *, ax: Axes | None = None) -> Axes:
-    """Root mean square deviation in velocity of each method, best on top, with its bias as a mark.
+    """Root mean square deviation in velocity of each method, in the order given from the top, with its bias as a mark.
 
-    `ranking` has the columns of ranking.csv; calibrated forms are solid and show their cross-validated figure as well.
+    `ranking` has the columns of ranking.csv; calibrated forms are dark and show their cross-validated figure as well.
+    Bars far beyond the useful methods end in an arrow; the figure stands beside the name.
     """
-    rows = ranking.sort_values("rms_percent", ascending=False)
-    ax = drawing.axes(ax, 7.0, 0.9 + 0.32 * max(len(rows), 1))
-    calibrated = (rows["kind"] == "calibrated").to_numpy()
-    place = np.arange(len(rows))
-    ax.barh(place[~calibrated], rows["rms_percent"][~calibrated], color="#c9d3de", edgecolor=drawing.INK, linewidth=0.6)
-    ax.barh(place[calibrated], rows["rms_percent"][calibrated], color="#17375e", edgecolor=drawing.INK, linewidth=0.6)
-    ax.plot(rows["bias_percent"].abs(), place, "|", color="#c8642b", ms=11, mew=2.2, label="bias, without its sign")
-    if calibrated.any():
-        ax.plot(
-            rows["cv_rms_percent"][calibrated],
-            place[calibrated],
-            "D",
-            mfc="white",
-            mec=drawing.INK,
-            ms=5.5,
-            label="cross-validated",
-        )
-    ax.set_yticks(
-        place, [f"{rms:.1f} %   {name}" for name, rms in zip(rows["method"], rows["rms_percent"], strict=True)]
+    rows = ranking.iloc[::-1].reset_index(drop=True)
+    ax = drawing.axes(ax, 7.0, 0.9 + 0.3 * max(len(rows), 1))
+    end = 1.08 * min(rows["rms_percent"].max(), max(60.0, 2 * rows["rms_percent"].min()))
+    for kind, colour in (("published", "#c9d3de"), ("calibrated", "#17375e")):
+        some = rows[rows["kind"] == kind]
+        ax.barh(some.index, some["rms_percent"].clip(upper=end), color=colour, edgecolor=drawing.INK, linewidth=0.6)
+    beyond = rows.index[rows["rms_percent"] > end]
+    ax.plot(np.full(len(beyond), 0.99 * end), beyond, ">", color=drawing.INK, ms=5)
+    near = rows[rows["bias_percent"].abs() < end]
+    ax.plot(
+        near["bias_percent"].abs(), near.index, "|", color="#c8642b", ms=10, mew=2.2, label="bias, without its sign"
     )
-    ax.set(xlabel="deviation in velocity, % (bars: root mean square)", xlim=(0, None))
+    if (rows["kind"] == "calibrated").any():
+        ax.plot(rows["cv_rms_percent"], rows.index, "D", color=drawing.INK, mfc="white", ms=5, label=LEFT_OUT)
+    labels = [f"{name}   {rms:.1f} %" for name, rms in zip(rows["method"], rows["rms_percent"], strict=True)]
+    ax.set_yticks(rows.index, labels)
+    ax.set(xlabel="deviation in velocity, % (bars: root mean square)", xlim=(0, end), ylim=(-0.6, len(rows) - 0.4))
     ax.spines["left"].set_visible(False)
     ax.tick_params(axis="y", length=0)
     _legend(ax)

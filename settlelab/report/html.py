@@ -130,8 +130,7 @@ def _tables(
     return {
         "lab": sections.lab_view(lab_table(measured, calibration), system),
         "ranking": sections.ranking_view(calibration) if calibration else None,
-        "calibration": calibration_view(calibration) if calibration and calibration.chosen else None,
-        "no_calibration": " ".join(calibration.notes) if calibration else "No drop could be compared.",
+        "calibration": calibration_view(calibration) if calibration else None,
         "controls": sections.controls_view(measured.controls, system) if len(measured.controls) else None,
         "budget": sections.budget_view(shares) if len(shares) else None,
         "drops": sections.drops_view(drops, system) if len(drops) else None,

@@ -95,9 +95,11 @@ RANKING = (
     Show(heading="bias, %", field="bias_percent", unit="1", form=_percent),
     Show(heading="root mean square, %", field="rms_percent", unit="1", form=_plain_percent),
     Show(heading="cross-validated, %", field="cv_rms_percent", unit="1", form=_plain_percent),
-    Show(heading="largest, %", field="max_percent", unit="1", form=_plain_percent),
-    Show(heading="within 10 %, % of drops", field="within_10_percent", unit="1", form=_plain_percent),
-    Show(heading="within 20 %, % of drops", field="within_20_percent", unit="1", form=_plain_percent),
+    Show(heading="largest, %", field="max_percent", unit="1", form=_percent),
+    Show(heading="within 10 %", field="within_10_percent", unit="1", form=_plain_percent),
+    Show(heading="within 20 %", field="within_20_percent", unit="1", form=_plain_percent),
+    Show(heading="as good as the best of its kind", field="as_good_as_best"),
+    Show(heading="source", field="source"),
 )
 
 

@@ -3,14 +3,17 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from functools import partial
 from pathlib import Path
-from types import SimpleNamespace
 
 import numpy as np
 import pandas as pd
 
+from settlelab.calibrate import Calibration, calibrate_drops
 from settlelab.measure.model import Drop, Measured
-from settlelab.study.model import Camera, Column, Fluid, Particle, Recording, ReportChoice, Study
+from settlelab.physics.drag import DRAG, terminal_velocity
+from settlelab.physics.rheology import Rheology
+from settlelab.study.model import CalibrationChoice, Camera, Column, Fluid, Particle, Recording, ReportChoice, Study
 from settlelab.units import Quantity
 from settlelab.video.model import Clock, Track, TrackedRecording
 
@@ -40,10 +43,14 @@ def invented_drops() -> list[dict[str, object]]:
     for lot, (size, sphericity) in {"A": (0.0035, 0.82), "B": (0.005, 0.74), "C": (0.007, 0.68)}.items():
         for count in range(1, 5):
             diameter = size * draw.uniform(0.85, 1.15)
-            velocity = 0.1 * (diameter / 0.004) ** 0.8 * (sphericity / 0.8) ** 0.5
+            law = partial(DRAG["ganser-1993"].drag_coefficient, sphericity=sphericity)
+            unbounded = terminal_velocity(
+                law, diameter=diameter, particle_density=2600, fluid_density=1155, rheology=Rheology(consistency=0.0111)
+            )
+            velocity = 1.12 * float(unbounded.velocity) * draw.normal(1.0, 0.015)
             for _ in range(2):
                 speed = velocity * draw.normal(1.0, 0.012)
-                cd = 4 * 9.81 * diameter * (2600 / 1155 - 1) / (3 * speed**2)
+                cd = 4 * 9.80665 * diameter * (2600 / 1155 - 1) / (3 * speed**2)
                 reynolds = 1155 * speed * diameter / 0.0111
                 rows.append(
                     drop(
@@ -102,61 +109,10 @@ def budget_of(drops: list[dict[str, object]]) -> pd.DataFrame:
     )
 
 
-def calibration_of(measured: Measured, **given: object) -> SimpleNamespace:
-    """Invented predictions of two published methods and one calibrated form."""
-    used = measured.drops[measured.drops["accepted"].astype(bool) & ~measured.drops["control"].astype(bool)]
-    draw = np.random.default_rng(1)
-    methods = (
-        ("ganser-1993", "published", 1.03, 0.05),
-        ("chien-1994", "published", 1.1, 0.06),
-        ("power of sphericity", "calibrated", 1.0, 0.03),
-    )
-    predictions, ranking = [], []
-    for method, kind, bias, spread in methods:
-        predicted = used["unbounded_velocity"] * draw.normal(bias, spread, len(used))
-        deviation = predicted / used["unbounded_velocity"] - 1
-        predictions.append(
-            pd.DataFrame(
-                {
-                    "drop": used["drop"],
-                    "method": method,
-                    "kind": kind,
-                    "predicted_velocity": predicted,
-                    "deviation": deviation,
-                    "in_range": np.arange(len(used)) % 6 > 0,
-                }
-            )
-        )
-        rms = 100 * float(np.sqrt((deviation**2).mean()))
-        ranking.append(
-            {
-                "method": method,
-                "kind": kind,
-                "drops": len(used),
-                "in_range_percent": 83.3,
-                "bias_percent": 100 * float(deviation.mean()),
-                "rms_percent": rms,
-                "max_percent": 100 * float(deviation.abs().max()),
-                "within_10_percent": 80.0,
-                "within_20_percent": 100.0,
-                "cv_rms_percent": 1.2 * rms if kind == "calibrated" else np.nan,
-            }
-        )
-    chosen = SimpleNamespace(
-        name="power of sphericity",
-        formula="Cd = (24/Re)(1 + 0.15 Re^0.687) φ^(−a)",
-        names=("a",),
-        values=np.array([1.234]),
-        u=np.array([0.0567]),
-    )
-    parts = {
-        "ranking": pd.DataFrame(ranking),
-        "predictions": pd.concat(predictions),
-        "best_published": "ganser-1993",
-        "chosen": chosen,
-        "notes": ("Valid for Re 29 to 130.",),
-    }
-    return SimpleNamespace(**(parts | given))
+def calibration_of(measured: Measured, **given: object) -> Calibration:
+    """The calibration of these drops with a single form, which does not take long."""
+    choice = CalibrationChoice(forms=("velocity-power",), descriptors=("sphericity",))
+    return replace(calibrate_drops(measured.drops, choice), **given)
 
 
 CONTROL_COLUMNS = ["drop", "recording", "particle", "expected_velocity", "expected_velocity_u", "velocity"]

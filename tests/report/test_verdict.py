@@ -9,7 +9,7 @@ from tests.report.invented import calibration_of, drop, invented_drops, measured
 
 def found(topic: str, drops: list[dict[str, object]] | None = None, **given: object) -> Finding:
     measured = measured_of(invented_drops() if drops is None else drops, **given)
-    return next(finding for finding in findings(measured, calibration_of(measured)) if finding.topic == topic)
+    return next(finding for finding in findings(measured, None) if finding.topic == topic)
 
 
 def controls(*en: float) -> pd.DataFrame:
@@ -45,20 +45,22 @@ def test_no_drop_at_all() -> None:
     assert finding == Finding("bad", "drops", "No fall was found in the recordings.")
 
 
-def test_calibration_that_does_not_survive_cross_validation_is_doubted() -> None:
+def test_calibration_speaks_for_itself() -> None:
     measured = measured_of(invented_drops())
     calibration = calibration_of(measured)
-    calibration.ranking.loc[calibration.ranking["kind"] == "calibrated", "cv_rms_percent"] = 50.0
-    finding = next(finding for finding in findings(measured, calibration) if finding.topic == "calibration")
-    assert finding.mark == "doubt"
-    assert "does not do better than the published correlation on drops it has not seen" in finding.text
+    assert Finding("good", "calibration", calibration.notes[0]) in findings(measured, calibration)
+    kept = calibration_of(measured, chosen=None, notes=("The published law is kept.",))
+    assert Finding("doubt", "calibration", "The published law is kept.") in findings(measured, kept)
 
 
-def test_no_chosen_form_says_why() -> None:
+def test_published_correlation_is_doubted_where_it_is_far_off() -> None:
     measured = measured_of(invented_drops())
-    calibration = calibration_of(measured, chosen=None, notes=("Three drops are too few for a fit.",))
-    finding = next(finding for finding in findings(measured, calibration) if finding.topic == "calibration")
-    assert finding.text.endswith("Three drops are too few for a fit.")
+    calibration = calibration_of(measured)
+    row = calibration.ranking["method"] == calibration.best_published
+    calibration.ranking.loc[row, ["rms_percent", "bias_percent", "in_range_percent"]] = (23.4, -20.1, 83.3)
+    finding = next(each for each in findings(measured, calibration) if each.topic == "published correlation")
+    assert finding.mark == "doubt"
+    assert "23 % (root mean square), bias −20.1 %, 23 drops, 83 % inside its range." in finding.text
 
 
 def test_without_comparison_there_is_no_correlation() -> None:
