@@ -1,0 +1,139 @@
+"""Linking: which object of this frame is which of the last, by prediction and the best assignment of all at once."""
+
+from __future__ import annotations
+
+from collections.abc import Sequence
+from dataclasses import dataclass, field
+
+import numpy as np
+from scipy.optimize import linear_sum_assignment
+
+from settlelab.video.model import FloatArray
+
+MEMORY = 8  # points from which the next one is predicted
+CONFIRMED = 3  # points after which a prediction is trusted
+FIRST_STEP = 0.15  # of the picture height: the farthest an object moves before its speed is known
+GATE_FLOOR = 3.0  # px
+LARGEST_SIZE_JUMP = np.log(2.5)  # of the area from one frame to the next
+SIZE_WEIGHT = 0.5  # of a size jump against a missed prediction, both over their largest
+GAP_TRAVEL = 12.0  # px besides three diameters: how far an object may pass unseen, behind a mark of the column
+SHORTEST_GAP, LONGEST_GAP = 5.0, 150.0  # frame intervals
+FORBIDDEN = 1e6
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Sighting:
+    """One object in one frame, in the picture turned so that y grows along gravity."""
+
+    index: int  # of the frame among those decoded
+    x: float
+    y: float
+    area: float
+    aspect_ratio: float
+    circularity: float
+    orientation: float
+    edge_width: float
+    contrast: float
+    cut: bool
+
+    @property
+    def diameter(self) -> float:
+        """Area-equivalent diameter, px."""
+        return float(np.sqrt(4 * self.area / np.pi))
+
+
+@dataclass(slots=True)
+class _Path:
+    """An object being followed."""
+
+    sightings: list[Sighting] = field(default_factory=list)
+    velocity: tuple[float, float] | None = None  # px per frame interval
+    seen: float = 0.0  # time of the last sighting, frame intervals
+
+    def add(self, sighting: Sighting, times: FloatArray) -> None:
+        self.sightings.append(sighting)
+        self.seen = float(times[sighting.index])
+        recent = self.sightings[-MEMORY:]
+        if len(recent) > 1:
+            t = times[[one.index for one in recent]] - self.seen
+            place = np.array([(one.x, one.y) for one in recent])
+            spread = t - t.mean()
+            slope = spread @ (place - place.mean(axis=0)) / (spread @ spread)
+            self.velocity = (float(slope[0]), float(slope[1]))
+
+    def patience(self) -> float:
+        """How long it may stay unseen, frame intervals."""
+        speed = float(np.hypot(*self.velocity)) if self.velocity else np.inf
+        travel = 3 * self.sightings[-1].diameter + GAP_TRAVEL
+        return float(np.clip(travel / max(speed, 1e-6), SHORTEST_GAP, LONGEST_GAP))
+
+
+class Linker:
+    """Joins sightings to paths, frame by frame."""
+
+    def __init__(self, height: int) -> None:
+        """`height` of the turned picture, px."""
+        self._first_step = FIRST_STEP * height
+        self._followed: list[_Path] = []
+        self._ended: list[_Path] = []
+
+    def add(self, now: float, sightings: Sequence[Sighting], times: FloatArray) -> None:
+        """Take in the objects of the next frame, seen at time `now` [frame intervals]; `times` of the frames so far."""
+        waiting = [path for path in self._followed if now - path.seen <= path.patience()]
+        self._ended += [path for path in self._followed if now - path.seen > path.patience()]
+        left = list(sightings)
+        for known in (True, False):  # those whose speed is known choose first
+            paths = [path for path in waiting if (len(path.sightings) >= CONFIRMED) == known]
+            pairs = self._assign(paths, left, now)
+            for path, sighting in pairs:
+                path.add(sighting, times)
+            taken = {id(sighting) for _, sighting in pairs}
+            left = [sighting for sighting in left if id(sighting) not in taken]
+        for sighting in left:
+            path = _Path()
+            path.add(sighting, times)
+            waiting.append(path)
+        self._followed = waiting
+
+    def paths(self) -> list[list[Sighting]]:
+        """All paths so far, in order of appearance."""
+        every = [path.sightings for path in self._ended + self._followed]
+        return sorted(every, key=lambda one: (one[0].index, one[0].y, one[0].x))
+
+    def _assign(self, paths: list[_Path], sightings: list[Sighting], now: float) -> list[tuple[_Path, Sighting]]:
+        if not paths or not sightings:
+            return []
+        cost = np.array([[self._cost(path, sighting, now) for sighting in sightings] for path in paths])
+        rows, columns = linear_sum_assignment(cost)
+        return [
+            (paths[row], sightings[column])
+            for row, column in zip(rows, columns, strict=True)
+            if cost[row, column] < FORBIDDEN
+        ]
+
+    def _cost(self, path: _Path, sighting: Sighting, now: float) -> float:
+        """Missed distance and size jump, each over the largest that is allowed."""
+        last, passed = path.sightings[-1], now - path.seen
+        jump = abs(np.log(sighting.area / last.area))
+        if sighting.contrast * last.contrast < 0 or (jump > LARGEST_SIZE_JUMP and not (sighting.cut or last.cut)):
+            return FORBIDDEN
+        known = path.velocity is not None
+        miss = _miss(path, sighting, passed) if known else self._first_miss(last, sighting, passed)
+        return miss + SIZE_WEIGHT * jump / LARGEST_SIZE_JUMP if miss <= 1 else FORBIDDEN
+
+    def _first_miss(self, last: Sighting, sighting: Sighting, passed: float) -> float:
+        """Without a known speed: anything along gravity that is not too far, little across."""
+        down, across = sighting.y - last.y, sighting.x - last.x
+        farthest = max(self._first_step, 2 * last.diameter) * passed
+        aside = GATE_FLOOR + 0.5 * last.diameter + 0.25 * abs(down)
+        return float(np.hypot(down / farthest, across / aside))
+
+
+def _miss(path: _Path, sighting: Sighting, passed: float) -> float:
+    """Distance from the predicted place over the largest that is allowed."""
+    assert path.velocity is not None
+    last, (vx, vy) = path.sightings[-1], path.velocity
+    speed = float(np.hypot(vx, vy))
+    trust = 0.3 if len(path.sightings) >= CONFIRMED else 0.7
+    gate = GATE_FLOOR + (trust * speed + 0.1) * passed + 0.15 * last.diameter
+    return float(np.hypot(sighting.x - last.x - vx * passed, sighting.y - last.y - vy * passed) / gate)

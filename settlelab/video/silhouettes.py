@@ -1,0 +1,254 @@
+"""Silhouettes in a window of a frame: sub-pixel centroid, area and shape of every object in it.
+
+A dark particle before a lamp is measured by the share of light it takes away, so that a lamp gradient does not shift
+its centroid; a bright one by the light it adds, over the lamp's. The sums are linear in the grey levels: neither the
+blur of the lens nor the position within a pixel biases them.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+from typing import Any
+
+import cv2
+import numpy as np
+from numpy.typing import NDArray
+
+from settlelab.video.background import DARKEST, Background, Image
+
+Mask = NDArray[np.uint8]
+
+SMOOTHING = 0.8  # px, standard deviation of the Gaussian before the threshold
+NOISE_LEFT = 0.36  # of white noise after that smoothing: 1 / (2 sqrt(pi) 0.8)
+SEEN = 4.5  # times the smoothed noise: a pixel belongs to an object
+CERTAIN = 7.0  # times the smoothed noise: its peak makes it one
+FAINTEST = 1.5  # grey levels; below that compression leaves marks of its own
+REACH = 3  # px, how far beyond the mask an object's light is summed
+INSIDE = 3  # px from the edge of the half-level silhouette: certainly covered
+SMALLEST_AREA = 3.0  # px2
+MARK_CONTRAST = 0.05  # of a strong object's contrast: compression leaves marks that faint around it
+MARK_REACH = 32.0  # px from its edge, two blocks of the codec
+BORDER = 2  # px; an object nearer to the edge of the picture is cut
+ANGLES = np.deg2rad(np.arange(0, 180, 5))
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Silhouette:
+    """One object in one frame; positions in the picture as decoded."""
+
+    x: float  # px
+    y: float  # px
+    area: float  # px2, sum of the coverage: not biased by blur
+    aspect_ratio: float  # smallest over largest Feret diameter
+    circularity: float  # sqrt(4 pi A / P^2)
+    orientation: float  # rad, long axis against the vertical of the picture
+    edge_width: float  # px, over which the coverage rises from 0 to 1
+    contrast: float  # grey levels, negative for an object brighter than the scene
+    cut: bool  # reaches the edge of the picture
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Window:
+    """A part of a frame, set against the background."""
+
+    left: int  # px, of its first column in the picture
+    top: int
+    taken: Image  # (h, w) grey levels that the scene has more than the frame
+    scene: Image  # (h, w) grey levels of the background at the brightness of the frame
+    noise: float  # grey levels, one pixel
+    size: tuple[int, int]  # px, width and height of the picture
+
+
+def window_of(picture: NDArray[np.generic], box: tuple[int, int, int, int], gains: Image, scene: Background) -> Window:
+    """Cut the box (left, top, right, bottom) out of a frame; `gains` is the brightness of each full row."""
+    left, top, right, bottom = box
+    part = picture[top:bottom, left:right].astype(np.float32) - np.float32(scene.black)
+    expected = scene.level[top:bottom, left:right] * gains[top:bottom, None]
+    taken = expected - part
+    rim = np.concatenate([taken[:2].ravel(), taken[-2:].ravel(), taken[:, :2].ravel(), taken[:, -2:].ravel()])
+    middle = np.median(rim)
+    quiet = rim[np.abs(rim - middle) < 3 * scene.noise]
+    taken -= quiet.mean() if len(quiet) > len(rim) // 2 else 0.0  # a lamp that changed here only
+    height, width = picture.shape
+    return Window(left=left, top=top, taken=taken, scene=expected, noise=scene.noise, size=(width, height))
+
+
+def silhouettes(window: Window) -> list[Silhouette]:
+    """Every object of a window, in the order of the picture."""
+    smooth = np.asarray(cv2.GaussianBlur(window.taken, (0, 0), SMOOTHING), dtype=np.float32)
+    change = np.abs(smooth)
+    unit = max(NOISE_LEFT * window.noise, FAINTEST / SEEN)
+    count, labels, stats, _ = cv2.connectedComponentsWithStats((change > SEEN * unit).astype(np.uint8), connectivity=8)
+    found = []
+    for label in range(1, count):
+        if stats[label, cv2.CC_STAT_AREA] < SMALLEST_AREA:
+            continue
+        mask = (labels == label).astype(np.uint8)
+        if change[mask > 0].max() < CERTAIN * unit:
+            continue
+        others = ((labels > 0) & (labels != label)).astype(np.uint8)
+        silhouette = _measure(window, smooth, mask, others)
+        if silhouette is not None:
+            found.append(silhouette)
+    return found
+
+
+def without_marks(found: list[Silhouette]) -> list[Silhouette]:
+    """The objects of a frame without the traces that compression leaves around strong ones."""
+    return [one for one in found if not any(_is_mark_of(one, other) for other in found)]
+
+
+def _is_mark_of(one: Silhouette, other: Silhouette) -> bool:
+    """Whether an object is so faint beside the other that it is a trace of compression around it."""
+    if abs(one.contrast) > MARK_CONTRAST * abs(other.contrast):
+        return False
+    reach = MARK_REACH + np.sqrt(other.area / np.pi)
+    return bool(np.hypot(one.x - other.x, one.y - other.y) < reach)
+
+
+def _measure(window: Window, smooth: Image, mask: Mask, others: Mask) -> Silhouette | None:
+    """Coverage of every pixel of one object, and what follows from it; None for a trace of noise."""
+    sign = 1.0 if smooth[mask > 0].sum() > 0 else -1.0
+    scene = np.maximum(window.scene, 1.0) if sign > 0 else _lamp(window.scene)
+    weight = sign * window.taken / scene
+    plateau = _plateau(sign * smooth / scene, mask)
+    if not plateau > 0:
+        return None
+    half = _filled(((sign * smooth / scene > plateau / 2) & (mask > 0)).astype(np.uint8))
+    support = cv2.dilate(mask, _disc(REACH))
+    if others.any():
+        support[cv2.dilate(others, _disc(1)) > 0] = 0
+    coverage = np.where(support > 0, weight / plateau, 0.0)
+    coverage[cv2.erode(half, _disc(INSIDE), borderValue=0) > 0] = 1.0
+    area = float(coverage.sum())
+    if area < SMALLEST_AREA:
+        return None
+    return _shape(window, coverage.astype(np.float32), half, area, sign * plateau * float(scene[half > 0].mean()))
+
+
+def _shape(window: Window, coverage: Image, half: Mask, area: float, contrast: float) -> Silhouette:
+    rows, columns = np.arange(coverage.shape[0], dtype=np.float64), np.arange(coverage.shape[1], dtype=np.float64)
+    along, across = coverage.sum(axis=1, dtype=np.float64), coverage.sum(axis=0, dtype=np.float64)
+    y, x = float(rows @ along / area), float(columns @ across / area)
+    xx, yy = float(across @ (columns - x) ** 2), float(along @ (rows - y) ** 2)
+    xy = float((rows - y) @ coverage.astype(np.float64) @ (columns - x))
+    perimeter, edge_width = _edge(coverage)
+    smallest, largest = _feret(half)
+    touched_rows, touched_columns = np.flatnonzero(half.any(axis=1)), np.flatnonzero(half.any(axis=0))
+    left, top = window.left + touched_columns[0], window.top + touched_rows[0]
+    right, bottom = window.left + touched_columns[-1], window.top + touched_rows[-1]
+    width, height = window.size
+    return Silhouette(
+        x=window.left + x,
+        y=window.top + y,
+        area=area,
+        aspect_ratio=smallest / largest,
+        circularity=min(1.0, float(np.sqrt(4 * np.pi * area)) / perimeter) if perimeter > 0 else float("nan"),
+        orientation=0.5 * float(np.arctan2(2 * xy, yy - xx)),
+        edge_width=edge_width,
+        contrast=contrast,
+        cut=bool(left <= BORDER or top <= BORDER or right >= width - 1 - BORDER or bottom >= height - 1 - BORDER),
+    )
+
+
+def _lamp(scene: Image) -> Image:
+    """The slow part of the scene: what lights a bright particle, which does not let through what is behind it."""
+    side = max(3, min(scene.shape) // 2)
+    return np.maximum(cv2.blur(scene, (side, side)), np.float32(DARKEST))
+
+
+def _plateau(change: Image, mask: Mask) -> float:
+    """Change of a pixel that is wholly covered: the middle of the inside, or the peak where there is no inside."""
+    values = change[mask > 0]
+    peak = float(np.quantile(values, 0.95)) if len(values) > 40 else float(values.max())
+    core = _filled(((change > peak / 2) & (mask > 0)).astype(np.uint8))
+    inside = change[cv2.erode(core, _disc(INSIDE), borderValue=0) > 0]
+    return float(np.median(inside)) if len(inside) >= 5 and np.median(inside) > peak / 2 else peak
+
+
+def _edge(coverage: Image) -> tuple[float, float]:
+    """Perimeter and width of the edge, px.
+
+    The coverage rises from 0 to 1 across the edge, so its gradient summed over the plane is the perimeter (co-area
+    formula), whatever the blur; the area of the rising part over the perimeter is its width.
+    """
+    smooth = cv2.GaussianBlur(coverage, (0, 0), 1.0)
+    slope = np.hypot(
+        cv2.Sobel(smooth, cv2.CV_32F, 1, 0, ksize=3, scale=0.125),
+        cv2.Sobel(smooth, cv2.CV_32F, 0, 1, ksize=3, scale=0.125),
+    )
+    edge = cv2.dilate(((smooth > 0.1) & (smooth < 0.9)).astype(np.uint8), _disc(1)) > 0
+    perimeter = float(slope[edge].sum())
+    rising = float(np.count_nonzero((coverage > 0.1) & (coverage < 0.9)))
+    return perimeter, rising / perimeter / 0.8 if perimeter > 0 else 0.0
+
+
+def _feret(half: Mask) -> tuple[float, float]:
+    """Smallest and largest distance of two parallel tangents, px, of the half-level silhouette."""
+    contours, _ = cv2.findContours(half, cv2.RETR_EXTERNAL, cv2.CHAIN_APPROX_SIMPLE)
+    points = np.concatenate([contour.reshape(-1, 2) for contour in contours]).astype(np.float64)
+    hull = cv2.convexHull(points.astype(np.float32)).reshape(-1, 2)
+    along = hull @ np.stack([np.cos(ANGLES), np.sin(ANGLES)]).astype(np.float32)
+    # the outline passes through pixel centres: half a pixel is missing on either side
+    widths = along.max(axis=0) - along.min(axis=0) + 1.0
+    return float(widths.min()), float(widths.max())
+
+
+def _filled(mask: Mask) -> Mask:
+    """The mask with its holes closed: a glint inside a grain is part of the grain."""
+    contours, _ = cv2.findContours(mask, cv2.RETR_EXTERNAL, cv2.CHAIN_APPROX_NONE)
+    return np.asarray(cv2.drawContours(np.zeros_like(mask), contours, -1, 1, thickness=cv2.FILLED), dtype=np.uint8)
+
+
+def _disc(radius: int) -> Mask:
+    side = 2 * radius + 1
+    return np.asarray(cv2.getStructuringElement(cv2.MORPH_ELLIPSE, (side, side)), dtype=np.uint8)
+
+
+def changed_boxes(small: Image, gains: Image, scene: Background, margin: int) -> Iterator[tuple[int, int, int, int]]:
+    """Boxes (left, top, right, bottom) of the full picture in which something differs from the background.
+
+    Overlapping boxes are joined, so that no object is met twice.
+    """
+    difference = np.abs(small - scene.small * gains[:, None])
+    limit = np.maximum(SEEN * scene.small_noise, FAINTEST)
+    mask = (difference > limit).astype(np.uint8)
+    if not mask.any():
+        return
+    reach = margin // scene.factor + 1
+    joined = cv2.dilate(mask, np.ones((2 * reach + 1, 2 * reach + 1), np.uint8))
+    count, _, stats, _ = cv2.connectedComponentsWithStats(joined, connectivity=8)
+    height, width = scene.level.shape
+    for left, top, wide, high in _disjoint(stats[1:count, :4]):
+        yield (
+            left * scene.factor,
+            top * scene.factor,
+            min((left + wide) * scene.factor + scene.factor * (left + wide == small.shape[1]), width),
+            min((top + high) * scene.factor + scene.factor * (top + high == small.shape[0]), height),
+        )
+
+
+def _disjoint(boxes: NDArray[Any]) -> list[tuple[int, int, int, int]]:
+    """Boxes (left, top, width, height), those that overlap replaced by their common hull until none do."""
+    waiting = [tuple(int(value) for value in box) for box in boxes]
+    done: list[tuple[int, int, int, int]] = []
+    while waiting:
+        left, top, wide, high = waiting.pop(0)
+        for index, (other_left, other_top, other_wide, other_high) in enumerate(done):
+            apart = (
+                left >= other_left + other_wide
+                or other_left >= left + wide
+                or top >= other_top + other_high
+                or other_top >= top + high
+            )
+            if not apart:
+                del done[index]
+                first_x, first_y = min(left, other_left), min(top, other_top)
+                last_x = max(left + wide, other_left + other_wide)
+                last_y = max(top + high, other_top + other_high)
+                waiting.insert(0, (first_x, first_y, last_x - first_x, last_y - first_y))
+                break
+        else:
+            done.append((left, top, wide, high))
+    return sorted(done, key=lambda box: (box[1], box[0]))
