@@ -6,8 +6,14 @@ analysis is never imported here, so that an error in it cannot hide in its own t
 
 from __future__ import annotations
 
+from settlelab.simulate.at_random import random_study
+from settlelab.simulate.bench import Instruments, TestFluid, glycerol_water, polymer
 from settlelab.simulate.film import DropTruth, PositionTruth, pictures, positions, recording, truth
 from settlelab.simulate.grains import Grain, Sphere, angular_grain, convex_grain, random_direction
+from settlelab.simulate.lab import SimulatedStudy, Take, draw_study, write_truth
+from settlelab.simulate.lots import Lot, cuttings
+from settlelab.simulate.order import Order, draw_order
+from settlelab.simulate.sample import draw_field_study, field_study
 from settlelab.simulate.scene import (
     Bubble,
     Camera,
@@ -21,6 +27,7 @@ from settlelab.simulate.scene import (
     ShapeLaw,
     corey_shape_factor,
 )
+from settlelab.simulate.schedule import Manner, with_drops
 
 __all__ = [
     "Bubble",
@@ -29,20 +36,37 @@ __all__ = [
     "Drop",
     "DropTruth",
     "Grain",
+    "Instruments",
     "Lamp",
     "Liquid",
+    "Lot",
+    "Manner",
     "Nuisances",
+    "Order",
     "Particle",
     "PositionTruth",
     "Scene",
     "ShapeLaw",
+    "SimulatedStudy",
     "Sphere",
+    "Take",
+    "TestFluid",
     "angular_grain",
     "convex_grain",
     "corey_shape_factor",
+    "cuttings",
+    "draw_field_study",
+    "draw_order",
+    "draw_study",
+    "field_study",
+    "glycerol_water",
     "pictures",
+    "polymer",
     "positions",
     "random_direction",
+    "random_study",
     "recording",
     "truth",
+    "with_drops",
+    "write_truth",
 ]

@@ -18,6 +18,7 @@ SHORT_MARK, LONG_MARK = 4e-3, 8e-3  # m, every fifth is long
 MENISCUS = 2.2e-3  # m, thickness of the dark band at the surface
 CAPILLARY_LENGTH = 2.5e-3  # m, how far the meniscus climbs along from the wall
 RELEASE_TUBE = 9e-3  # m, outer width
+BOTTOM_PLATE = 6e-3  # m, thickness
 
 
 @dataclass(frozen=True, slots=True)
@@ -111,7 +112,9 @@ def _column_transmission(scene: Scene) -> FloatArray:
     if column.graduation is not None:
         light *= 1 - 0.75 * _marks(x - column.axis, y, column, scale)
     if column.bottom is not None:
-        light *= 1 - 0.9 * np.clip((y - column.bottom) / scale + 0.5, 0, 1)[:, None]
+        plate = _overlap(y, column.bottom, column.bottom + BOTTOM_PLATE, scale)
+        beyond = _overlap(y, column.bottom + BOTTOM_PLATE, np.inf, scale)
+        light *= (1 - 0.9 * plate - 0.6 * beyond)[:, None]
     if column.release_tube and scene.drops:
         tube = _overlap(x - scene.drops[0].x, -RELEASE_TUBE / 2, RELEASE_TUBE / 2, scale)
         light *= 1 - 0.93 * tube * np.clip((scene.drops[0].y - y) / scale + 0.5, 0, 1)[:, None]

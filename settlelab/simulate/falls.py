@@ -74,11 +74,11 @@ class Trajectory:
         return np.flatnonzero(inside & (times > self.drop.time) & (fallen < self.landing))
 
 
-def settle(particle: Particle, scene: Scene) -> Settled:
-    """Terminal state of a particle in the liquid and the column of a scene."""
+def settle(particle: Particle, scene: Scene, scatter: float = 1.0) -> Settled:
+    """Terminal state of a particle in the liquid and the column of a scene; `scatter` is that of the drop."""
     liquid, diameter = scene.liquid, particle.body.equivalent_diameter
     free = terminal_velocity(
-        scene.law.drag(particle.body, particle.scatter),
+        scene.law.drag(particle.body, particle.scatter * scatter),
         diameter=diameter,
         particle_density=particle.density,
         fluid_density=liquid.density,
@@ -102,12 +102,12 @@ def trajectories(scene: Scene) -> list[Trajectory]:
 
 def _trajectory(drop: Drop, scene: Scene) -> Trajectory:
     particle, liquid = drop.particle, scene.liquid
-    settled = settle(particle, scene)
+    settled = settle(particle, scene, drop.scatter)
     terminal = settled.unbounded_velocity * settled.wall_factor
     way = scene.camera.height * scene.camera.metre_per_px - drop.y + particle.body.reach + MARGIN
     elapsed = np.arange(0.0, 1.3 * way / terminal + 10 * STEP, STEP)
     fall = fall_from_release(
-        scene.law.drag(particle.body, particle.scatter),
+        scene.law.drag(particle.body, particle.scatter * drop.scatter),
         Body(diameter=particle.body.equivalent_diameter, density=particle.density),
         Medium(density=liquid.density, rheology=liquid.rheology),
         elapsed,

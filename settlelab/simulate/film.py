@@ -51,7 +51,9 @@ class DropTruth:
     short_axis: Millimetre
     corey_shape_factor: Number
     sphericity: Number
-    scatter: Number  # factor of this particle on the drag law
+    stokes_drag_ratio: Number  # k_S of the shape law
+    newton_drag_ratio: Number  # k_N
+    scatter: Number  # factor of this particle in this drop on the drag law
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -145,6 +147,7 @@ def truth(scene: Scene) -> pd.DataFrame:
 def _row(scene: Scene, number: int, fall: Trajectory) -> dict[str, object]:
     particle, settled = fall.drop.particle, fall.settled
     long, intermediate, short = particle.body.axes
+    stokes, newton = scene.law.drag_ratios(particle.body)
     frames = fall.whole_frames(scene)
     first, last = (int(frames[0]), int(frames[-1])) if len(frames) else (-1, -1)
     return {
@@ -169,7 +172,9 @@ def _row(scene: Scene, number: int, fall: Trajectory) -> dict[str, object]:
         "short_axis": short,
         "corey_shape_factor": short / np.sqrt(long * intermediate),
         "sphericity": particle.body.sphericity,
-        "scatter": particle.scatter,
+        "stokes_drag_ratio": stokes,
+        "newton_drag_ratio": newton,
+        "scatter": particle.scatter * fall.drop.scatter,
     }
 
 

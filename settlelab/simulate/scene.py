@@ -84,10 +84,14 @@ class ShapeLaw:
     newton_exponent: float = 1.05
     base: str = "clift-gauvin-1971"
 
+    def drag_ratios(self, body: Body) -> tuple[float, float]:
+        """Drag ratios k_S and k_N of a body."""
+        value = corey_shape_factor(body) if self.descriptor == "corey_shape_factor" else body.sphericity
+        return float(value**-self.stokes_exponent), float(value**-self.newton_exponent)
+
     def drag(self, body: Body, scatter: float = 1.0) -> Callable[[FloatArray], FloatArray]:
         """Reynolds number to drag coefficient for a body, times `scatter`."""
-        value = corey_shape_factor(body) if self.descriptor == "corey_shape_factor" else body.sphericity
-        stokes, newton = (np.asarray(value**-power) for power in (self.stokes_exponent, self.newton_exponent))
+        stokes, newton = (np.asarray(ratio) for ratio in self.drag_ratios(body))
         base = DRAG[self.base].drag_coefficient
 
         def law(reynolds: FloatArray) -> FloatArray:
@@ -127,6 +131,7 @@ class Drop:
     tilt: tuple[float, float, float] = (1.0, 0.0, 0.0)  # axis of the first turn and of the tumbling, unit vector
     angle: float = 0.0  # rad, at release
     turns_per_metre: float = 0.0  # tumbling
+    scatter: float = 1.0  # factor on the drag coefficient in this drop, as its attitude differs from drop to drop
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
