@@ -88,7 +88,7 @@ def _show_in_full(name: str) -> None:
     from settlelab.physics.walls import WALLS
 
     entry = find(name, DRAG, WALLS, LIQUIDS)
-    click.echo(f"{entry.name}: {entry.purpose}\n")
+    click.echo(textwrap.fill(f"{entry.name}: {entry.purpose}", _WIDTH) + "\n")
     ranges = [f"{_spoken(quantity)} {_range(entry, quantity)}" for quantity in entry.valid]
     facts = [("source", entry.source), ("as in", entry.where)]
     if name in DRAG:

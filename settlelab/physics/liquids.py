@@ -30,7 +30,7 @@ LIQUIDS: Registry[LiquidProperty] = Registry(LiquidProperty)
 
 @LIQUIDS.published(
     "tanaka-2001",
-    source="Tanaka, Girard, Davis, Peuto & Bignell (2001), Metrologia 38, 301-309",
+    source="Tanaka et al. (2001), Metrologia 38, 301-309",
     liquid="water",
     quantity="density",
     unit="kg/m3",

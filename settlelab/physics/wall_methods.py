@@ -25,7 +25,7 @@ class WallMethod(Entry):
 WALLS: Registry[WallMethod] = Registry(WallMethod)
 
 _CREEPING = (0.0, 0.1)
-_COMPUTED = "computed for this project's reference sheet"
+_COMPUTED = "reference sheet of settlelab"
 
 
 @WALLS.published(
@@ -84,8 +84,8 @@ _tube_spline = CubicSpline(_TUBE_RATIO, np.log(_TUBE_DRAG), bc_type=((1, 2.10444
 
 @WALLS.published(
     "tube-creeping",
-    source="multipole solution of the creeping flow about a sphere in a tube",
-    where=_COMPUTED,
+    source=_COMPUTED,
+    where="computed: multipole and Fourier-Bessel solution of the flow about a sphere in a tube",
     regime="creeping flow",
     valid={"ratio": (0.0, 0.8), "reynolds_unbounded": _CREEPING},
     note="Spline of the computed drag factor; good to 0.01 % to ratio 0.5 and 0.2 % at 0.65. Beyond 0.8 the drag is "
@@ -146,8 +146,8 @@ def _between_rows(rows: FloatArray, position: FloatArray, nodes: tuple[float, ..
 
 @WALLS.published(
     "tube-finite-reynolds",
-    source="axisymmetric finite-element solution for a sphere in a tube",
-    where=_COMPUTED,
+    source=_COMPUTED,
+    where="computed: axisymmetric finite elements, Navier-Stokes equations",
     regime="intermediate Reynolds number",
     valid={"reynolds_unbounded": (0.3, 150.0), "ratio": (0.0, 0.5)},
     note="Cubic in the ratio, linear in ln Re; absolute error 0.002. Below Re 0.3 it goes over, linearly in Re, into "
@@ -188,9 +188,9 @@ _power_splines = CubicSpline(_POWER_RATIO, np.transpose(_POWER))
 
 @WALLS.published(
     "tube-power-law",
-    source="axisymmetric finite-element solution for a sphere in a creeping power-law fluid",
-    where=_COMPUTED,
-    regime="creeping flow of a power-law fluid",
+    source=_COMPUTED,
+    where="computed: axisymmetric finite elements, creeping flow",
+    regime="creeping flow, power law",
     valid={"flow_index": (0.3, 1.0), "ratio": (0.0, 0.5), "reynolds_unbounded": _CREEPING},
     note="Cubic in the ratio, linear in the flow index; absolute error 0.002. A flow index outside takes the value at "
     "the nearest end; beyond ratio 0.5 it is a power of the Newtonian value.",

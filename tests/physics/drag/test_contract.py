@@ -13,7 +13,7 @@ from tests.physics.outside import inputs, published
 METHODS = tuple(DRAG.values())
 SPHERES = tuple(method for method in METHODS if method.diameter == "sphere")
 CHIPS = {"sphericity": 0.8, "corey_shape_factor": 0.6, "flatness": 0.6, "elongation": 0.8, "density_ratio": 2.65}
-# Creeping limit of Cd Re/24 for these chips, worked by hand. ganser: 1/3 + 2/3 0.8^-0.5; coelho: 0.843 log10(0.8/0.065);
+# Creeping limit of Cd Re/24 for these chips, by hand. ganser: 1/3 + 2/3 0.8^-0.5; coelho: 0.843 log10(0.8/0.065);
 # wu-wang: 53.5 exp(-0.39)/24; bagheri: F_S = 0.6 * 0.8^1.3 = 0.44894, (0.76572 + 1.30596)/2.
 CREEPING = {
     "haider-levenspiel-1989": 1.0,
