@@ -49,7 +49,7 @@ def _show_all() -> None:
     click.echo("Drag laws\n")
     _aligned([_DRAG_HEAD, *map(_drag_row, DRAG.values())])
     click.echo("\nWall factors of a round column\n")
-    _aligned([("name", "made for", "diameter/bore", "Reynolds number", "source"), *map(_wall_row, WALLS.values())])
+    _aligned([("name", "made for", "diameter/bore", "Re", "source"), *map(_wall_row, WALLS.values())])
     click.echo("\nLiquids\n")
     head = ("name", "gives", "temperature", "standard uncertainty", "source")
     _aligned([head, *map(_liquid_row, LIQUIDS.values())])
@@ -57,7 +57,7 @@ def _show_all() -> None:
     click.echo("settlelab methods NAME shows one in full; a law outside its range still answers, and is marked.")
 
 
-_DRAG_HEAD = ("name", "for", "needs", "Reynolds number", "source")
+_DRAG_HEAD = ("name", "for", "needs", "Re", "source")
 
 
 def _drag_row(method: Method) -> tuple[str, ...]:
