@@ -19,6 +19,7 @@ from settlelab.study.keys import Keys
 __all__ = ["Section", "Source", "load_toml", "several"]
 
 AnyKeys = TypeVar("AnyKeys", bound=Keys)
+BARE = '; text and quantities stand in quotes: key = "12.4 ± 0.1 mm"'
 WANTED = {  # kind of pydantic error -> what would be accepted
     "string_type": "text in quotes",
     "bool_type": "true or false",
@@ -131,14 +132,18 @@ def _syntax(file: Path, text: str, message: str) -> Fault:
     lines = text.splitlines()
     row = int(digits[0]) if digits else max(len(lines), 1)
     found = lines[row - 1].strip() if row <= len(lines) else ""
-    accepted = f'a line of TOML ({reason.lower()}); text and quantities stand in quotes: key = "12.4 ± 0.1 mm"'
-    return Fault(file=file, row=row, found=found or "end of file", accepted=accepted)
+    told = "the same key stands above it" if reason == "Cannot overwrite a value" else reason.lower()
+    _, equals, value = found.partition("=")
+    hint = BARE if equals and not value.strip().startswith(('"', "'", "[", "{")) else ""
+    return Fault(file=file, row=row, found=found or "end of file", accepted=f"a line of TOML ({told}){hint}")
 
 
 def _shown(typed: object) -> str | None:
     """A TOML value as it was typed; None for text that is still to be filled in."""
     if isinstance(typed, str):
         return typed.strip() or None
+    if isinstance(typed, float):
+        return repr(typed)
     return json.dumps(typed, default=str, ensure_ascii=False)
 
 
