@@ -7,9 +7,11 @@ same vertical axis, depth over time: a straight line is a fall at terminal veloc
 from __future__ import annotations
 
 import math
-from collections.abc import Iterator, Sequence
+from collections.abc import Sequence
+from dataclasses import dataclass
 from itertools import count, product
 from pathlib import Path
+from statistics import median
 from string import ascii_lowercase
 from typing import Any
 
@@ -29,10 +31,27 @@ LARGEST = (7.5, 9.0)  # inch, width and height that the still must fit into
 CHART_WIDTH = 4.6  # inch
 MARGINS = {"left": 0.75, "between": 0.75, "right": 0.25, "top": 0.75, "bottom": 0.55}  # inch
 NOTE_LINE = 0.19  # inch, one line of text below
-MARKS = 12  # about so many marks on the longest fall
+MARKS = 12  # at least, on the usual fall
 HALO = (withStroke(linewidth=2.5, foreground="white"),)
 Style = dict[str, Any]  # keywords of a matplotlib line
-NOT_COUNTED: Style = {"color": "#5b6570", "marker": "x", "markersize": 4, "mew": 1.0, "linestyle": "none"}
+REFUSED = "#5b6570"
+CROSS: Style = {"color": REFUSED, "marker": "x", "markersize": 4, "mew": 1.0, "linestyle": "none"}
+SPECK: Style = {"color": REFUSED, "marker": ".", "markersize": 2.5, "linestyle": "none"}
+CROWD = 6  # more objects than these, refused for one reason, get no letters
+SPECKS = "·"
+
+
+@dataclass(frozen=True, slots=True)
+class Refused:
+    """Objects refused for one reason, and the mark that stands for it in the picture."""
+
+    mark: str
+    reason: str
+    tracks: tuple[Track, ...]
+
+    def __str__(self) -> str:
+        told = f"{self.mark}  not counted" if self.mark == SPECKS else f"×  {self.mark}  not counted"
+        return f"{told}{f' ({len(self.tracks)} objects)' if len(self.tracks) > 1 else ''}: {self.reason}"
 
 
 def overlay(tracked: TrackedRecording, drops: pd.DataFrame | None = None) -> Figure:
@@ -51,8 +70,8 @@ def overlay(tracked: TrackedRecording, drops: pd.DataFrame | None = None) -> Fig
     Figure
         For `save_overlay`, or any other use.
     """
-    reasons = _reasons(tracked.refused)
-    figure, still, chart = _sheet(tracked, lines=len(reasons))
+    refused = _groups(tracked.refused)
+    figure, still, chart = _sheet(tracked, lines=len(refused))
     step = _time_step(tracked.falls)
     _background(still, tracked)
     chart.set_xlim(0, 1.04 * tracked.frame_count / tracked.clock.frame_rate)
@@ -65,10 +84,9 @@ def overlay(tracked: TrackedRecording, drops: pd.DataFrame | None = None) -> Fig
         _draw_fall((still, chart), fall, tracked.scale.value, step, style)
         _tag(still, fall, tracked.scale.value, depth, _number(index, row))
         _label(chart, fall, tracked.scale.value, _description(index, row))
-    for letter, (_, tracks) in zip(_letters(), reasons.items(), strict=False):
-        for track in tracks:
-            _draw_refused((still, chart), track, tracked.scale.value, letter)
-    _words(figure, tracked, step, reasons)
+    for group in refused:
+        _draw_refused((still, chart), group, tracked.scale.value)
+    _words(figure, tracked, step, refused)
     return figure
 
 
@@ -134,25 +152,25 @@ def _draw_fall(sheet: tuple[Axes, Axes], fall: Track, scale: float, step: float,
     chart.plot(fall.time[marked], y[marked], linestyle="none", markersize=5, mew=1.0, **style)
 
 
-def _draw_refused(sheet: tuple[Axes, Axes], track: Track, scale: float, letter: str) -> None:
-    still, chart = sheet
-    x, y = 1e3 * scale * track.x, 1e3 * scale * track.y
-    some = slice(None, None, max(1, len(x) // 12))
-    still.plot(x[some], y[some], path_effects=HALO, **NOT_COUNTED)
-    chart.plot(track.time[some], y[some], **NOT_COUNTED)
-    for ax, across in ((still, x), (chart, track.time)):
-        ax.annotate(
-            letter,
-            (across[-1], y[-1]),
-            (5, 0),
-            textcoords="offset points",
-            va="center",
-            fontsize=8,
-            style="italic",
-            color="#5b6570",
-            path_effects=HALO,
-            annotation_clip=False,
-        )
+def _draw_refused(sheet: tuple[Axes, Axes], group: Refused, scale: float) -> None:
+    style = SPECK if group.mark == SPECKS else CROSS
+    for track in group.tracks:
+        some = slice(None, None, max(1, len(track.x) // 12))
+        for ax, across in zip(sheet, (1e3 * scale * track.x, track.time), strict=True):
+            y = 1e3 * scale * track.y
+            ax.plot(across[some], y[some], zorder=1.5, **style)
+            if group.mark != SPECKS:
+                ax.annotate(
+                    group.mark,
+                    (across[-1], y[-1]),
+                    (5, 0),
+                    textcoords="offset points",
+                    va="center",
+                    fontsize=8,
+                    style="italic",
+                    color=REFUSED,
+                    path_effects=HALO,
+                )
 
 
 def _tag(still: Axes, fall: Track, scale: float, depth: float, text: str) -> None:
@@ -194,7 +212,7 @@ def _label(chart: Axes, fall: Track, scale: float, text: str) -> None:
     )
 
 
-def _words(figure: Figure, tracked: TrackedRecording, step: float, reasons: dict[str, list[Track]]) -> None:
+def _words(figure: Figure, tracked: TrackedRecording, step: float, refused: Sequence[Refused]) -> None:
     still, chart = figure.axes
     clock = tracked.clock
     source = "as stated" if clock.source == "stated" else "from the container's clock"
@@ -208,15 +226,9 @@ def _words(figure: Figure, tracked: TrackedRecording, step: float, reasons: dict
     figure.text(left, 1 - 0.50 / size, head, fontsize=8.5, color=drawing.INK)
     chart.set_xlabel("time, s")
     chart.grid(color=drawing.FAINT, linewidth=0.6)
-    for line, (letter, (reason, tracks)) in enumerate(zip(_letters(), reasons.items(), strict=False)):
-        number = "" if len(tracks) == 1 else f" ({len(tracks)} objects)"
-        figure.text(
-            left,
-            (NOTE_LINE * (len(reasons) - line) - 0.05) / size,
-            f"×  {letter}  not counted{number}: {reason}",
-            fontsize=8,
-            color=drawing.INK,
-        )
+    for line, group in enumerate(refused):
+        height = NOTE_LINE * (len(refused) - line) - 0.05
+        figure.text(left, height / size, str(group), fontsize=8, color=drawing.INK)
 
 
 def _number(index: int, row: pd.Series | None) -> str:
@@ -236,18 +248,16 @@ def _description(index: int, row: pd.Series | None) -> str:
     return " · ".join(parts)
 
 
-def _reasons(refused: Sequence[Track]) -> dict[str, list[Track]]:
-    """The refused objects by reason, in order of appearance."""
+def _groups(refused: Sequence[Track]) -> list[Refused]:
+    """The refused objects by reason, in order of appearance, each with its letter; a crowd is drawn as specks."""
     reasons: dict[str, list[Track]] = {}
     for track in refused:
         reasons.setdefault(track.reason, []).append(track)
-    return reasons
-
-
-def _letters() -> Iterator[str]:
-    """a, b, ... z, aa, ab, ..."""
-    for length in count(1):
-        yield from ("".join(letters) for letters in product(ascii_lowercase, repeat=length))
+    letters = ("".join(word) for length in count(1) for word in product(ascii_lowercase, repeat=length))
+    return [
+        Refused(SPECKS if len(tracks) > CROWD else next(letters), reason, tuple(tracks))
+        for reason, tracks in reasons.items()
+    ]
 
 
 def _marked(time: np.ndarray, step: float) -> np.ndarray:
@@ -257,8 +267,9 @@ def _marked(time: np.ndarray, step: float) -> np.ndarray:
 
 
 def _time_step(falls: Sequence[Track]) -> float:
-    longest = max((float(fall.time[-1] - fall.time[0]) for fall in falls), default=1.0)
-    return _round_number(longest / MARKS)
+    """A round step that gives the usual fall about `MARKS` marks."""
+    usual = median(float(fall.time[-1] - fall.time[0]) for fall in falls) if falls else 1.0
+    return _round_number(usual / MARKS)
 
 
 def _round_number(value: float) -> float:

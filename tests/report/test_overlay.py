@@ -41,6 +41,13 @@ def test_other_objects_are_grouped_by_their_reason() -> None:
     assert "×  b  not counted (2 objects): shorter than 10 frames" in told
 
 
+def test_a_crowd_of_specks_is_counted_but_not_lettered() -> None:
+    specks = tuple(replace(tracked_of().refused[0], reason="too short") for _ in range(7))
+    told = words(overlay(replace(tracked_of(), refused=(*specks, *tracked_of().refused))))
+    assert "·  not counted (7 objects): too short" in told
+    assert "×  a  not counted: rising: a bubble" in told
+
+
 def test_head_tells_clock_scale_and_time_step() -> None:
     told = words(overlay(tracked_of("a/b1.mp4")))
     assert "b1.mp4" in told
