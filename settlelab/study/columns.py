@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -14,7 +14,7 @@ from settlelab.study.table import Column, Table
 from settlelab.units import Quantity, difference_to_si, parse_number, parse_quantity
 from settlelab.units.spelling import SI, conversion
 
-__all__ = ["Cells", "cell_fault", "is_numeric", "near_heading", "read_quantities"]
+__all__ = ["Cells", "cell_fault", "is_numeric", "near_heading", "read_numbers", "read_quantities"]
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,6 +67,14 @@ def read_quantities(
     return Cells(value, u)
 
 
+def read_numbers(table: Table, column: Column, faults: list[Fault]) -> Cells:
+    """A column as plain numbers, whatever unit its heading names; `faults` grows by the cells that are none."""
+    plain = replace(column, unit=None)
+    cells = read_quantities(replace(table, columns=(plain,)), column.name, "1", faults)
+    assert cells is not None
+    return cells
+
+
 def is_numeric(table: Table, column: Column) -> bool:
     """Whether any cell of a column is a number (with or without uncertainty) and nothing else."""
     for cell in column.cells:
@@ -113,19 +121,15 @@ class _Reader:
     def read(self, index: int, faults: list[Fault]) -> Quantity | None:
         """One row; None where there is nothing or a fault, which is added to `faults`."""
         u_text = self.spread.cells[index] if self.spread is not None else ""
-        if not self.column.cells[index]:
-            if u_text:
-                faults.append(
-                    cell_fault(self.table, self.column, index, f"a value to the uncertainty {u_text} beside it")
-                )
+        if not self.column.cells[index] and not u_text:
             return None
-        at = self.column
+        at = self.column  # where a fault stands
         try:
-            quantity = self._value(index)
+            quantity = self._value(index, u_text)
             if self.spread is not None and u_text:
                 at = self.spread
-                quantity = Quantity(quantity.value, self._u(u_text, quantity))
-                at = self.column
+                quantity = Quantity(quantity.value, self._u(self.spread, u_text, quantity))
+            at = self.column
             if self.limits is not None:
                 self.limits.check(quantity, self.dimension)
         except ValueError as error:
@@ -133,21 +137,22 @@ class _Reader:
             return None
         return quantity
 
-    def _value(self, index: int) -> Quantity:
+    def _value(self, index: int, u_text: str) -> Quantity:
         text, unit = self.column.cells[index], self.column.unit or ""
+        if not text:
+            raise ValueError(f"a value to the uncertainty {u_text} beside it")
         return parse_quantity(text, self.dimension, unit=unit, decimal_comma=self.table.decimal_comma)
 
-    def _u(self, text: str, quantity: Quantity) -> float:
+    def _u(self, spread: Column, text: str, quantity: Quantity) -> float:
         """An uncertainty in SI; in percent of the value where only the `u(...)` column is in percent."""
-        assert self.spread is not None
         number = parse_number(text, decimal_comma=self.table.decimal_comma)
         if quantity.u:
             raise ValueError(f'the only uncertainty: another one stands in column "{self.column.heading}"')
         if number < 0.0:
             raise ValueError("an uncertainty of 0 or above")
-        if self.spread.unit == "%" and self.column.unit != "%":
+        if spread.unit == "%" and self.column.unit != "%":
             return abs(quantity.value) * number * 0.01
-        return float(difference_to_si(number, self.spread.unit or self.column.unit or "1"))
+        return float(difference_to_si(number, spread.unit or self.column.unit or "1"))
 
 
 def _unfit(table: Table, column: Column, dimension: str) -> str:

@@ -12,7 +12,7 @@ from typing import Annotated, Literal
 
 from pydantic import BaseModel, ConfigDict, PlainValidator
 
-from settlelab.study.limits import ABOVE_ZERO, FRACTION, INDEX, LIQUID, Limits
+from settlelab.study.limits import ABOVE_ZERO, FRACTION, INDEX, LIQUID, LIQUID_DENSITY, SOLID_DENSITY, Limits
 from settlelab.study.model import Gravity, RheologyChoice
 from settlelab.units import Quantity, parse_quantity
 
@@ -83,7 +83,8 @@ def _date(typed: object) -> str:
 Length = Annotated[Quantity, PlainValidator(_typed("m", ABOVE_ZERO))]
 Duration = Annotated[Quantity, PlainValidator(_typed("s", ABOVE_ZERO))]
 Frequency = Annotated[Quantity, PlainValidator(_typed("Hz", ABOVE_ZERO))]
-Density = Annotated[Quantity, PlainValidator(_typed("kg/m3", ABOVE_ZERO))]
+SolidDensity = Annotated[Quantity, PlainValidator(_typed("kg/m3", SOLID_DENSITY))]
+LiquidDensity = Annotated[Quantity, PlainValidator(_typed("kg/m3", LIQUID_DENSITY))]
 Viscosity = Annotated[Quantity, PlainValidator(_typed("Pa s", ABOVE_ZERO))]
 Temperature = Annotated[Quantity, PlainValidator(_typed("K", LIQUID))]
 Share = Annotated[Quantity, PlainValidator(_typed("1", FRACTION))]
@@ -108,7 +109,7 @@ class FluidKeys(Keys):
     liquid: Literal["water", "glycerol-water", "measured"] | None = None
     temperature: Temperature | None = None
     mass_fraction: Share | None = None
-    density: Density | None = None
+    density: LiquidDensity | None = None
     viscosity: Viscosity | None = None
     viscometer: str | None = None
     rheology: RheologyChoice | None = None
@@ -154,7 +155,7 @@ class ControlKeys(Keys):
 
     particle: str | None = None
     diameter: Length | None = None
-    density: Density | None = None
+    density: SolidDensity | None = None
 
 
 class RecordingKeys(Keys):

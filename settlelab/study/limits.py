@@ -9,7 +9,18 @@ from settlelab.physics.constants import ZERO_CELSIUS
 from settlelab.units import Quantity
 from settlelab.units.spelling import SI
 
-__all__ = ["ABOVE_ZERO", "FRACTION", "INDEX", "LIQUID", "NOT_NEGATIVE", "SHAPE", "WATER", "Limits"]
+__all__ = [
+    "ABOVE_ZERO",
+    "FRACTION",
+    "INDEX",
+    "LIQUID",
+    "LIQUID_DENSITY",
+    "NOT_NEGATIVE",
+    "SHAPE",
+    "SOLID_DENSITY",
+    "WATER",
+    "Limits",
+]
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -26,13 +37,15 @@ class Limits:
         value = quantity.value
         if value > self.high or value < self.low or (value == self.low and not self.with_low):
             raise ValueError(f"{SI[dimension].name} {self.text}")
-        if self.low == 0.0 and not self.with_low and quantity.u >= value:
+        if self.low >= 0.0 and not self.with_low and quantity.u >= value:
             raise ValueError(f"{SI[dimension].name} larger than its uncertainty")
 
 
 ABOVE_ZERO = Limits(text="above 0", low=0.0)
 NOT_NEGATIVE = Limits(text="of 0 or above", low=0.0, with_low=True)
 SHAPE = Limits(text="above 0 and at most 1, as this shape descriptor is", low=0.0, high=1.0)
+SOLID_DENSITY = Limits(text="between 10 and 23000 kg/m3, as a particle has", low=10.0, high=23e3)
+LIQUID_DENSITY = Limits(text="between 400 and 14000 kg/m3, as a liquid has", low=400.0, high=14e3)
 FRACTION = Limits(text="between 0 and 100 %", low=0.0, high=1.0, with_low=True)
 INDEX = Limits(text="between 1 and 3, as a refractive index is", low=1.0, high=3.0, with_low=True)
 LIQUID = Limits(text="between -50 and 250 °C, as a test liquid has", low=ZERO_CELSIUS - 50, high=ZERO_CELSIUS + 250)

@@ -2,24 +2,23 @@
 
 from __future__ import annotations
 
-from dataclasses import replace
 from itertools import pairwise
 from typing import Any
 
 import numpy as np
 
 from settlelab.errors import Fault
-from settlelab.study.columns import Cells, cell_fault, is_numeric, near_heading, read_quantities
-from settlelab.study.limits import ABOVE_ZERO, SHAPE, Limits
+from settlelab.study.columns import Cells, cell_fault, is_numeric, near_heading, read_numbers, read_quantities
+from settlelab.study.limits import ABOVE_ZERO, SHAPE, SOLID_DENSITY, Limits
 from settlelab.study.model import Particle
-from settlelab.study.table import Column, Table
+from settlelab.study.table import Table
 
 __all__ = ["MEASURED", "read_particles"]
 
 # column -> SI unit and limits
 MEASURED: dict[str, tuple[str, Limits]] = {
     "mass": ("kg", ABOVE_ZERO),
-    "density": ("kg/m3", ABOVE_ZERO),
+    "density": ("kg/m3", SOLID_DENSITY),
     "diameter": ("m", ABOVE_ZERO),
     "long_axis": ("m", ABOVE_ZERO),
     "intermediate_axis": ("m", ABOVE_ZERO),
@@ -111,16 +110,8 @@ def _descriptors(table: Table, faults: list[Fault]) -> tuple[dict[str, Cells], t
             kind = "an uncertainty of a descriptor" if column.is_uncertainty else "text"
             notes.append(f'{table.file.name}: column "{column.heading}" is {kind} and not used')
         else:
-            descriptors[column.name] = _as_typed(table, column, faults)
+            descriptors[column.name] = read_numbers(table, column, faults)
     return descriptors, tuple(notes)
-
-
-def _as_typed(table: Table, column: Column, faults: list[Fault]) -> Cells:
-    """A column as plain numbers, whatever unit its heading names."""
-    plain = replace(column, unit=None)
-    cells = read_quantities(replace(table, columns=(plain,)), column.name, "1", faults)
-    assert cells is not None
-    return cells
 
 
 def _unknown(table: Table, particles: tuple[Particle, ...]) -> tuple[str, ...]:

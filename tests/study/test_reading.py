@@ -190,6 +190,11 @@ FAULTS = {
         '"101 ± 0.2 °C"',
         'fluid 1, temperature: "101.00 ± 0.20 °C" is not a temperature between 0 and 100 °C, where water is liquid',
     ),
+    "grams for kilograms": (
+        '"1006 ± 0.5 kg/m3"',
+        '"1.006 ± 0.0005 kg/m3"',
+        'fluid 2, density: "1.006 ± 0.0005 kg/m3" is not a density between 400 and 14000 kg/m3, as a liquid has',
+    ),
     "infinite": ('"10 %"', "inf", 'calibration, target: "inf" is not a number such as "0.82 ± 0.01"'),
     "two scales": (
         'gravity = "down"',

@@ -2,10 +2,15 @@
 
 from __future__ import annotations
 
+import csv
+import io
 from pathlib import Path
+from tempfile import TemporaryDirectory
 
 import openpyxl
 import pytest
+from hypothesis import given
+from hypothesis import strategies as st
 
 from settlelab.errors import InputFaults
 from settlelab.study import read_table
@@ -62,6 +67,22 @@ def test_rows_count_as_a_spreadsheet_counts(tmp_path: Path) -> None:
     table = read_table(table_of(tmp_path, "\nparticle,mass [mg]\n\nA-01,1\n,\nA-02,2\n"))
     assert table.heading_row == 2
     assert table.rows == (4, 6)
+
+
+CELLS = st.text(st.characters(codec="utf-8", exclude_categories=["C", "Z"]), max_size=8)
+
+
+@given(
+    cells=st.lists(st.tuples(CELLS, CELLS), min_size=1, max_size=5).map(lambda rows: [("A-01", "x"), *rows]),
+    delimiter=st.sampled_from(",;\t"),
+    encoding=st.sampled_from(["utf-8", "utf-8-sig", "utf-16"]),
+)
+def test_every_cell_comes_back_as_typed(cells: list[tuple[str, str]], delimiter: str, encoding: str) -> None:
+    file = io.StringIO(newline="")
+    csv.writer(file, delimiter=delimiter).writerows([("particle", "remark"), *cells])
+    with TemporaryDirectory() as folder:
+        table = read_table(table_of(Path(folder), file.getvalue(), encoding))
+    assert list(zip(*(column.cells for column in table.columns), strict=True)) == [row for row in cells if any(row)]
 
 
 def test_empty_cells_beyond_the_last_heading_do_not_count(tmp_path: Path) -> None:
