@@ -33,11 +33,12 @@ class Background:
     """The scene at rest. Grey levels are counted from the black level of the recording."""
 
     level: Image  # (height, width), grey levels
-    noise: float  # grey levels, standard deviation of one pixel of one frame
+    noise: Image  # (height, width), grey levels: standard deviation of one pixel over time, ripples included
     black: float
     factor: int  # side of the blocks of pixels that become one small pixel
     small: Image  # (height // factor, width // factor), block means of `level`
-    small_noise: Image  # same shape: standard deviation over time, ripples and mains flicker included
+    small_noise: Image  # same shape, of the block means
+    small_texture: Image  # same shape: largest difference of neighbouring pixels of `level` in the block
 
 
 def shrink(picture: Picture, factor: int) -> Image:
@@ -89,22 +90,26 @@ def background_of(samples: list[Picture], black: float) -> Background:
     evened = smalls / gains[:, :, None]
     small = np.median(evened, axis=0)
     small_noise = MAD_TO_SD * np.median(np.abs(evened - small), axis=0)
-    level, noise = np.empty((height, width), np.float32), []
+    level, noise = np.empty((height, width), np.float32), np.empty((height, width), np.float32)
     for rows in _strips(height, width, len(samples)):
         stack = np.stack([picture[rows].astype(np.float32) - np.float32(black) for picture in samples])
         stack /= np.stack([full_rows(gain, factor, height)[rows] for gain in gains])[:, :, None]
-        level[rows], strip_noise = _centre(stack)
-        noise.append(strip_noise)
-    pixel_noise = float(max(np.median(noise), ROUNDING_NOISE))
-    floor = np.float32(pixel_noise / factor)
+        level[rows], noise[rows] = _centre(stack)
+    usual = max(float(np.median(noise[::3, ::3])), ROUNDING_NOISE)
     return Background(
         level=level,
-        noise=pixel_noise,
+        noise=np.maximum(cv2.blur(noise, (5, 5)), np.float32(usual)),
         black=black,
         factor=factor,
         small=shrink(level, factor),
-        small_noise=np.maximum(cv2.blur(small_noise, (3, 3)), floor),
+        small_noise=np.maximum(cv2.blur(small_noise, (3, 3)), np.float32(usual / factor)),
+        small_texture=shrink(cv2.dilate(texture(level), np.ones((2 * factor - 1, 2 * factor - 1), np.uint8)), factor),
     )
+
+
+def texture(level: Image) -> Image:
+    """Difference of neighbouring pixels: where it is large, a shake or the codec changes the picture a lot."""
+    return np.asarray(cv2.morphologyEx(level, cv2.MORPH_GRADIENT, np.ones((3, 3), np.uint8)), dtype=np.float32)
 
 
 def row_gains(small: Image, reference: Image) -> Image:
@@ -150,12 +155,12 @@ def _strips(height: int, width: int, samples: int) -> Iterator[slice]:
         yield slice(start, min(start + rows, height))
 
 
-def _centre(stack: NDArray[Any]) -> tuple[Image, float]:
-    """Mean of the samples near the median, and the noise of a pixel."""
+def _centre(stack: NDArray[Any]) -> tuple[Image, Image]:
+    """Mean of the samples near the median, and the noise of each pixel."""
     middle = np.median(stack, axis=0)
     away = np.abs(stack - middle)
-    noise = max(float(MAD_TO_SD * np.median(away[:, ::3, ::3])), ROUNDING_NOISE)
-    near = away < 3 * noise
+    noise = MAD_TO_SD * np.median(away, axis=0)
+    near = away < 3 * max(float(np.median(noise)), ROUNDING_NOISE)
     count = near.sum(axis=0)
     mean = np.where(count > 0, (stack * near).sum(axis=0) / np.maximum(count, 1), middle)
-    return mean.astype(np.float32), noise
+    return mean.astype(np.float32), noise.astype(np.float32)

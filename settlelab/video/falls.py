@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 
 import numpy as np
 from numpy.typing import NDArray
@@ -16,8 +16,13 @@ TRAVEL_IN_DIAMETERS = 1.0
 STEADY = 0.8  # net over total travel along gravity, noise smoothed out
 SEEN_SHARE = 0.5  # of the frames between its first and its last
 AT_REST = 0.15  # of the fastest part of the path
-WHOLE = 0.93  # of the usual area: a silhouette below it at an end of the path is still partly hidden
+WHOLE = 0.95  # of the area a little further on: a silhouette below it at an end of the path is still partly hidden
 SMOOTHED_TRAVEL = 2.0  # px, over which speed is judged
+WANDER = 0.01  # of the way along gravity
+WANDER_FLOOR = 0.2  # px
+FAR_SLOWER, UNEXPLAINED = 0.1, 0.4  # see `drifting`
+SLOW = 0.5  # px per frame interval
+EVEN = 0.05  # of the way
 MENTIONED_TRAVEL = 3.0  # px; what moves less and is seen briefly is noise, not an object worth a line
 
 
@@ -54,9 +59,26 @@ def counting_points(path: Sequence[Sighting], times: FloatArray) -> list[Sightin
     kept = kept[first:last]
     if len(kept) < FEWEST_POINTS:
         return kept
-    area = np.array([one.area for one in kept])
-    whole = np.flatnonzero(area >= WHOLE * np.median(area))
-    return kept[int(whole[0]) : int(whole[-1]) + 1] if len(whole) else []
+    hidden_first = _partly_hidden(kept)
+    hidden_last = _partly_hidden(kept[::-1])
+    return kept[hidden_first : len(kept) - hidden_last]
+
+
+def _partly_hidden(path: Sequence[Sighting]) -> int:
+    """How many points at the start of a path show less than the whole object.
+
+    An object that comes out of hiding is whole after a way of its own diameter; until then its area is held against
+    that on the next two diameters.
+    """
+    way = np.hypot([one.x - path[0].x for one in path], [one.y - path[0].y for one in path])
+    area = np.array([one.area for one in path])
+    diameter = np.sqrt(4 * np.median(area) / np.pi)
+    emerging = way < diameter
+    after = area[~emerging & (way < 3 * diameter)]
+    if len(after) == 0:
+        return 0
+    hidden = np.flatnonzero(emerging & (area < WHOLE * np.median(after)))
+    return int(hidden[-1]) + 1 if len(hidden) else 0
 
 
 def speeds(points: Points) -> FloatArray:
@@ -86,14 +108,25 @@ def _in_motion(points: Points) -> tuple[int, int]:
 def why_not_a_fall(path: Sequence[Sighting], kept: Sequence[Sighting], times: FloatArray) -> str | None:
     """The reason for refusing a path, empty for a fall; None for noise that is not worth a line."""
     whole = Points(path, times)
-    if len(path) < FEWEST_POINTS or np.hypot(np.ptp(whole.x), np.ptp(whole.y)) < MENTIONED_TRAVEL:
-        moved = np.hypot(np.ptp(whole.x), np.ptp(whole.y)) > 10 * MENTIONED_TRAVEL and len(path) > 2
-        return "seen in too few frames" if moved else None
+    if len(path) < FEWEST_POINTS:
+        return "seen in too few frames" if len(path) > 2 and _keeps_going(whole) else None
+    if np.hypot(np.ptp(whole.x), np.ptp(whole.y)) < MENTIONED_TRAVEL:
+        return None
     if whole.cut.all():
         return "never wholly in view"
     if len(kept) < FEWEST_POINTS:
         return "wholly in view and in motion in too few frames"
+    if len(kept) < SEEN_SHARE * (kept[-1].index - kept[0].index + 1):
+        return "seen in too few of the frames on its way"
     return _why_not_falling(Points(kept, times))
+
+
+def _keeps_going(points: Points) -> bool:
+    """Whether a few points lie on an even way along gravity, with an even area: an object, not noise."""
+    down = float(points.y[-1] - points.y[0])
+    line = np.polyval(np.polyfit(points.time, points.y, 1), points.time)
+    even = np.abs(points.y - line).max() < EVEN * down and np.ptp(points.x) < 0.5 * down
+    return down > MENTIONED_TRAVEL and bool(even) and float(points.area.max() / points.area.min()) < 1.5
 
 
 def _why_not_falling(points: Points) -> str:
@@ -105,9 +138,39 @@ def _why_not_falling(points: Points) -> str:
         return "moves across gravity"
     if down < 0:
         return "rises"
-    if len(points.y) < SEEN_SHARE * (points.index[-1] - points.index[0] + 1):
-        return "seen in too few of the frames on its way"
     speed = speeds(points)
-    if abs(speed.sum()) < STEADY * np.abs(speed).sum():
-        return "wanders, with no steady way down"
+    if abs(speed.sum()) < STEADY * np.abs(speed).sum() or _wanders(points):
+        return "drifts, with no even speed"
     return ""
+
+
+def _wanders(points: Points) -> bool:
+    """A slow object that strays from an even, or evenly changing, speed by more than its place is uncertain."""
+    down = abs(float(points.y[-1] - points.y[0]))
+    if down > SLOW * (points.time[-1] - points.time[0]):
+        return False
+    middle, half = points.time.mean(), np.ptp(points.time) / 2
+    scaled = (points.time - middle) / half
+    stray = points.y - np.polyval(np.polyfit(scaled, points.y, 2), scaled)
+    return float(stray.std()) > max(WANDER_FLOOR, WANDER * down)
+
+
+def drifting(all_falls: Mapping[int, Points]) -> set[int]:
+    """Which falls are specks that drift with the fluid: ten times slower than others, and slower than size explains.
+
+    Of two particles of one density the smaller is slower by the square of the diameter at most (Stokes' law). A speck
+    that falls at less than 0.4 of that is not of their kind.
+    """
+    velocity = {
+        index: float((points.y[-1] - points.y[0]) / (points.time[-1] - points.time[0]))
+        for index, points in all_falls.items()
+    }
+    return {
+        index
+        for index, points in all_falls.items()
+        if any(
+            velocity[index] < FAR_SLOWER * velocity[other]
+            and velocity[index] < UNEXPLAINED * velocity[other] * (points.diameter / that.diameter) ** 2
+            for other, that in all_falls.items()
+        )
+    }

@@ -13,7 +13,7 @@ from settlelab.study.model import Camera, Column
 from settlelab.video import flags
 from settlelab.video.background import Background, background_of, full_rows, row_gains, sample, shrink
 from settlelab.video.clock import frame_times
-from settlelab.video.falls import Points, counting_points, why_not_a_fall
+from settlelab.video.falls import Points, counting_points, drifting, why_not_a_fall
 from settlelab.video.linking import Linker, Sighting
 from settlelab.video.model import Clock, FloatArray, Track, TrackedRecording
 from settlelab.video.optics import scale_of
@@ -140,8 +140,10 @@ def _judged(
     ticks = times * clock.frame_rate
     kept = [counting_points(path, ticks) for path in paths]
     reasons = [why_not_a_fall(path, points, ticks) for path, points in zip(paths, kept, strict=True)]
-    falling = [index for index, reason in enumerate(reasons) if reason == ""]
-    series = {index: Points(kept[index], ticks) for index in falling}
+    series = {index: Points(kept[index], ticks) for index, reason in enumerate(reasons) if reason == ""}
+    for index in drifting(series):
+        reasons[index] = "drifts with the fluid: far slower than its size explains"
+        del series[index]
     falls, refused = [], []
     for index, reason in enumerate(reasons):
         if reason is None:

@@ -18,6 +18,7 @@ LARGEST_SIZE_JUMP = np.log(2.5)  # of the area from one frame to the next
 SIZE_WEIGHT = 0.5  # of a size jump against a missed prediction, both over their largest
 GAP_TRAVEL = 12.0  # px besides three diameters: how far an object may pass unseen, behind a mark of the column
 SHORTEST_GAP, LONGEST_GAP = 5.0, 150.0  # frame intervals
+UNKNOWN_GAP = 1.5  # frame intervals that an object may be lost before its speed is known
 FORBIDDEN = 1e6
 
 
@@ -63,7 +64,10 @@ class _Path:
 
     def patience(self) -> float:
         """How long it may stay unseen, frame intervals."""
-        speed = float(np.hypot(*self.velocity)) if self.velocity else np.inf
+        if len(self.sightings) < CONFIRMED:
+            return UNKNOWN_GAP
+        assert self.velocity is not None
+        speed = float(np.hypot(*self.velocity))
         travel = 3 * self.sightings[-1].diameter + GAP_TRAVEL
         return float(np.clip(travel / max(speed, 1e-6), SHORTEST_GAP, LONGEST_GAP))
 

@@ -15,17 +15,18 @@ import cv2
 import numpy as np
 from numpy.typing import NDArray
 
-from settlelab.video.background import DARKEST, Background, Image
+from settlelab.video.background import DARKEST, Background, Image, texture
 
 Mask = NDArray[np.uint8]
 
 SMOOTHING = 0.8  # px, standard deviation of the Gaussian before the threshold
 NOISE_LEFT = 0.36  # of white noise after that smoothing: 1 / (2 sqrt(pi) 0.8)
 SEEN = 4.5  # times the smoothed noise: a pixel belongs to an object
-CERTAIN = 7.0  # times the smoothed noise: its peak makes it one
+CERTAIN = 1.5  # times that limit: its peak makes it one
 FAINTEST = 1.5  # grey levels; below that compression leaves marks of its own
 REACH = 3  # px, how far beyond the mask an object's light is summed
 INSIDE = 3  # px from the edge of the half-level silhouette: certainly covered
+TEXTURE_SHARE = 0.08  # of the difference of neighbouring pixels: what a shake of a tenth of a pixel changes
 SMALLEST_AREA = 3.0  # px2
 MARK_CONTRAST = 0.05  # of a strong object's contrast: compression leaves marks that faint around it
 MARK_REACH = 32.0  # px from its edge, two blocks of the codec
@@ -56,7 +57,7 @@ class Window:
     top: int
     taken: Image  # (h, w) grey levels that the scene has more than the frame
     scene: Image  # (h, w) grey levels of the background at the brightness of the frame
-    noise: float  # grey levels, one pixel
+    limit: Image  # (h, w) change of the smoothed window that belongs to an object, grey levels
     size: tuple[int, int]  # px, width and height of the picture
 
 
@@ -68,24 +69,25 @@ def window_of(picture: NDArray[np.generic], box: tuple[int, int, int, int], gain
     taken = expected - part
     rim = np.concatenate([taken[:2].ravel(), taken[-2:].ravel(), taken[:, :2].ravel(), taken[:, -2:].ravel()])
     middle = np.median(rim)
-    quiet = rim[np.abs(rim - middle) < 3 * scene.noise]
+    noise = scene.noise[top:bottom, left:right]
+    quiet = rim[np.abs(rim - middle) < 3 * np.median(noise)]
     taken -= quiet.mean() if len(quiet) > len(rim) // 2 else 0.0  # a lamp that changed here only
     height, width = picture.shape
-    return Window(left=left, top=top, taken=taken, scene=expected, noise=scene.noise, size=(width, height))
+    limit = np.maximum(SEEN * NOISE_LEFT * noise, FAINTEST) + TEXTURE_SHARE * texture(expected)
+    return Window(left=left, top=top, taken=taken, scene=expected, limit=limit, size=(width, height))
 
 
 def silhouettes(window: Window) -> list[Silhouette]:
     """Every object of a window, in the order of the picture."""
     smooth = np.asarray(cv2.GaussianBlur(window.taken, (0, 0), SMOOTHING), dtype=np.float32)
-    change = np.abs(smooth)
-    unit = max(NOISE_LEFT * window.noise, FAINTEST / SEEN)
-    count, labels, stats, _ = cv2.connectedComponentsWithStats((change > SEEN * unit).astype(np.uint8), connectivity=8)
+    change = np.abs(smooth) / window.limit
+    count, labels, stats, _ = cv2.connectedComponentsWithStats((change > 1).astype(np.uint8), connectivity=8)
     found = []
     for label in range(1, count):
         if stats[label, cv2.CC_STAT_AREA] < SMALLEST_AREA:
             continue
         mask = (labels == label).astype(np.uint8)
-        if change[mask > 0].max() < CERTAIN * unit:
+        if change[mask > 0].max() < CERTAIN:
             continue
         others = ((labels > 0) & (labels != label)).astype(np.uint8)
         silhouette = _measure(window, smooth, mask, others)
@@ -212,7 +214,7 @@ def changed_boxes(small: Image, gains: Image, scene: Background, margin: int) ->
     Overlapping boxes are joined, so that no object is met twice.
     """
     difference = np.abs(small - scene.small * gains[:, None])
-    limit = np.maximum(SEEN * scene.small_noise, FAINTEST)
+    limit = np.maximum(SEEN * scene.small_noise, FAINTEST) + TEXTURE_SHARE / scene.factor * scene.small_texture
     mask = (difference > limit).astype(np.uint8)
     if not mask.any():
         return
