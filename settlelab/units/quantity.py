@@ -90,10 +90,7 @@ def parse_quantity(text: str, dimension: str, *, unit: str = "", decimal_comma: 
     ValueError
         What would be accepted, as text that follows "is not": `a length such as "12.4 ± 0.1 mm"`.
     """
-    tidy = _PLUS_MINUS.sub("±", text.strip().replace("\N{NO-BREAK SPACE}", " ").replace("−", "-"))
-    if bracketed := _BRACKETED.fullmatch(tidy):
-        tidy = f"{bracketed['inside']} {bracketed['after']}"
-    match = _TEXT.fullmatch(tidy.strip())
+    match = _TEXT.fullmatch(_tidy(text))
     if match is None:
         raise ValueError(wanted(dimension))
     u_unit = match["u_unit"] or ""
@@ -111,6 +108,14 @@ def parse_quantity(text: str, dimension: str, *, unit: str = "", decimal_comma: 
         raise ValueError(f"{wanted(dimension)} (an uncertainty and its k are above 0)")
     in_si = (value * way.factor + way.offset) / si.factor
     return Quantity(in_si, _uncertainty(u, u_unit or unit, in_si, unit, dimension) / k)
+
+
+def _tidy(text: str) -> str:
+    """The text with plain signs and without the brackets of `(12.4 ± 0.1) mm`."""
+    tidy = _PLUS_MINUS.sub("±", text.strip().replace("\N{NO-BREAK SPACE}", " ").replace("−", "-"))
+    if bracketed := _BRACKETED.fullmatch(tidy):
+        tidy = f"{bracketed['inside']} {bracketed['after']}"
+    return tidy.strip()
 
 
 def _uncertainty(u: float, u_unit: str, value: float, unit: str, dimension: str) -> float:
