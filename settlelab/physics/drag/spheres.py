@@ -107,9 +107,10 @@ def haider_levenspiel_sphere(reynolds: FloatArray) -> FloatArray:
 )
 def swamee_ojha_sphere(reynolds: FloatArray) -> FloatArray:
     """Drag coefficient of a sphere by blending of powers."""
-    viscous = ((24 / reynolds) ** 1.6 + (130 / reynolds) ** 0.72) ** 2.5
+    viscous = (24 / reynolds) ** 1.6 + (130 / reynolds) ** 0.72
     inertial = ((40000 / reynolds) ** 2 + 1) ** -0.25
-    return 0.5 * (16 * viscous + inertial) ** 0.25
+    # 0.5 (16 viscous^2.5 + inertial)^0.25, with the power taken out that would overflow at a vanishing Reynolds number
+    return 0.5 * viscous**0.625 * (16 + inertial * viscous**-2.5) ** 0.25
 
 
 @published(
