@@ -1,0 +1,28 @@
+"""From trajectories to terminal velocities, drag coefficients and their uncertainty.
+
+In: a study and what the tracker followed. Out: the drop table, a budget of each uncertainty, control spheres against
+what is expected of them, and sentences on what was assumed and what is doubtful.
+"""
+
+from __future__ import annotations
+
+from settlelab.measure.controls import e_n
+from settlelab.measure.drops import measure_study
+from settlelab.measure.falls import measure_falls, track_table
+from settlelab.measure.fluids import FluidState, fluid_state
+from settlelab.measure.model import Drop, Measured, TrackPoint, Velocity
+from settlelab.measure.velocity import terminal_velocity
+
+__all__ = [
+    "Drop",
+    "FluidState",
+    "Measured",
+    "TrackPoint",
+    "Velocity",
+    "e_n",
+    "fluid_state",
+    "measure_falls",
+    "measure_study",
+    "terminal_velocity",
+    "track_table",
+]

@@ -13,6 +13,7 @@ if TYPE_CHECKING:
 Second = Annotated[float, Unit("s")]
 MillimetrePerSecond = Annotated[float, Unit("mm/s")]
 Millimetre = Annotated[float, Unit("mm")]
+SquareMillimetre = Annotated[float, Unit("mm2")]
 KilogramPerCubicMetre = Annotated[float, Unit("kg/m3")]
 MillipascalSecond = Annotated[float, Unit("mPa s")]
 Number = Annotated[float, Unit("1")]
@@ -24,10 +25,10 @@ class Velocity:
 
     value: float  # m/s along gravity
     u: float  # m/s, of the fit alone: scale and clock enter later, they are common to a recording
-    fraction_of_terminal: float  # share of the terminal velocity reached in the window, 0..1
+    fraction_of_terminal: float  # share of the terminal velocity reached at the last point, 0..1
     first: int  # index into the track of the first point used
     last: int  # index of the last point used, inclusive
-    flags: tuple[str, ...] = ()  # accelerating, wobbling
+    flags: tuple[str, ...] = ()  # accelerating, wobbling, short-track
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -54,7 +55,7 @@ class Drop:
     equivalent_diameter_u: Millimetre
     particle_density: KilogramPerCubicMetre
     fluid_density: KilogramPerCubicMetre
-    viscosity: MillipascalSecond  # apparent, at the shear rate velocity / equivalent diameter
+    viscosity: MillipascalSecond  # apparent, at the shear rate unbounded velocity / equivalent diameter
     wall_factor: Number
     wall_factor_u: Number
     unbounded_velocity: MillimetrePerSecond
@@ -84,11 +85,27 @@ class Drop:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class TrackPoint:
+    """One row of tracks.csv: a fall in one frame."""
+
+    drop: int  # as in drops.csv
+    frame: int  # of the recording, from 0
+    time: Second  # of the true clock, from the first frame
+    x: Millimetre  # across gravity, from the left edge of the picture
+    y: Millimetre  # along gravity, from the edge where things appear
+    area: SquareMillimetre
+    aspect_ratio: Number
+    circularity: Number
+    orientation_deg: float  # degrees: long axis of the silhouette against gravity
+    wall_distance: Millimetre  # centre to the nearer side wall
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Measured:
     """All that the measuring room computes for a study."""
 
     drops: pd.DataFrame  # columns of Drop, SI
-    budget: pd.DataFrame  # drop, output (velocity | reynolds | drag_coefficient), input, share (0..1 of the variance)
+    budget: pd.DataFrame  # drop, output (a column of Drop), input (see `chain.fallen`), share (0..1 of the variance)
     controls: (
         pd.DataFrame
     )  # drop, recording, particle, expected_velocity, expected_velocity_u, velocity, velocity_u, en, passed

@@ -1,0 +1,144 @@
+"""Control spheres: does the whole chain give the velocity that a known sphere must have?"""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+import numpy as np
+import pandas as pd
+
+from settlelab.measure.chain import Fallen, Setup
+from settlelab.measure.fluids import flow_curve
+from settlelab.measure.noise import FloatArray
+from settlelab.measure.particle import Grain
+from settlelab.measure.propagation import Effect, Estimate, propagate
+from settlelab.physics.drag import DRAG, terminal_velocity
+from settlelab.physics.walls import wall_factor
+
+__all__ = ["CONTROL_COLUMNS", "Comparison", "compare_control", "e_n", "expected_velocity", "told"]
+
+LAW = "cheng-2009"
+# Relative standard uncertainty of its drag coefficient: the good laws for spheres spread by 5 % (k = 2) from Re 0.01 to
+# 1e4. The creeping drag of a sphere in power-law fluid is computed up to 4 % apart (rectangular over that range).
+LAW_U = 0.025
+LAW_U_NON_NEWTONIAN = math.hypot(LAW_U, 0.04 / math.sqrt(3))
+COVERAGE = 2.0
+
+CONTROL_COLUMNS = (
+    "drop",
+    "recording",
+    "particle",
+    "expected_velocity",
+    "expected_velocity_u",
+    "velocity",
+    "velocity_u",
+    "en",
+    "passed",
+)
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class Comparison:
+    """A control sphere's velocity in the column [m/s] against the expected one; uncertainties are standard ones."""
+
+    expected: Estimate
+    measured: Estimate
+
+    @property
+    def en(self) -> float:
+        """E_n number."""
+        return e_n(self.measured.value, self.expected.value, COVERAGE * self.measured.u, COVERAGE * self.expected.u)
+
+    @property
+    def passed(self) -> bool:
+        """Whether the two agree within their expanded uncertainties."""
+        return abs(self.en) <= 1.0
+
+
+def e_n(value: float, reference: float, expanded_u: float, expanded_u_reference: float) -> float:
+    """Deviation over the expanded uncertainty of the deviation; satisfactory from -1 to 1.
+
+    References
+    ----------
+    ISO 13528:2022, 9.7; ISO/IEC 17043:2023, annex B.
+    """
+    return (value - reference) / math.hypot(expanded_u, expanded_u_reference)
+
+
+def expected_velocity(sphere: Grain, setup: Setup) -> Estimate:
+    """Velocity [m/s] in the column of a sphere of known size and density, by the standard drag curve and wall factor.
+
+    The budget adds the source "drag law" to those of sphere, fluid and column.
+
+    Parameters
+    ----------
+    sphere : Grain
+        Diameter and density known otherwise than from the recording.
+    setup : Setup
+        Column and fluid; scale and clock have no part in what is expected.
+    """
+    inputs = {
+        "diameter": sphere.diameter,
+        "particle_density": sphere.density,
+        "bore": setup.bore.diameter,
+        **setup.fluid.properties,
+        "wall_doubt": 0.0,
+        "law": 1.0,
+    }
+    _, flow_index, yield_stress = setup.fluid.rheology.arrays()
+    newtonian = flow_index == 1.0 and yield_stress == 0.0
+    _, wall_u = _expected({name: np.asarray([value]) for name, value in inputs.items()})
+    effects = (
+        *sphere.effects,
+        *setup.fluid.effects,
+        *setup.bore.effects,
+        Effect("walls", {"wall_doubt": float(wall_u[0])}),
+        Effect("drag law", {"law": LAW_U if newtonian else LAW_U_NON_NEWTONIAN}),
+    )
+    return propagate(lambda moved: {"velocity": _expected(moved)[0]}, inputs, effects)["velocity"]
+
+
+def _expected(inputs: Mapping[str, FloatArray]) -> tuple[FloatArray, FloatArray]:
+    """Velocity in the column, and the standard uncertainty of the wall factor in it."""
+    rheology = flow_curve(inputs)
+    unbounded = terminal_velocity(
+        lambda reynolds: DRAG[LAW].drag_coefficient(reynolds) * inputs["law"],
+        diameter=inputs["diameter"],
+        particle_density=inputs["particle_density"],
+        fluid_density=inputs["fluid_density"],
+        rheology=rheology,
+    )
+    wall = wall_factor(inputs["diameter"] / inputs["bore"], unbounded.reynolds, flow_index=rheology.flow_index)
+    return unbounded.velocity * (wall.factor + inputs["wall_doubt"]), wall.u
+
+
+def compare_control(sphere: Grain, setup: Setup, result: Fallen) -> Comparison:
+    """A control drop against what is expected of it."""
+    return Comparison(expected=expected_velocity(sphere, setup), measured=result.velocity)
+
+
+def told(controls: pd.DataFrame) -> str:
+    """What the control drops say about the chain, in a sentence.
+
+    Parameters
+    ----------
+    controls : DataFrame
+        Columns of `CONTROL_COLUMNS`, accepted drops only.
+    """
+    if controls.empty:
+        return "no control sphere was measured: scale, clock, fluid and wall correction are not checked together"
+    count, passed = len(controls), int(controls["passed"].sum())
+    worst = float(controls["en"].abs().max())
+    if passed == count:
+        return f"all {count} control drops agree with the expected velocity (largest |E_n| {worst:.2f}): under control"
+    deviation = (controls["velocity"] / controls["expected_velocity"] - 1).to_numpy(dtype=np.float64)
+    failed = f"{count - passed} of {count} control drops miss the expected velocity (largest |E_n| {worst:.2f})"
+    if np.all(deviation > 0) or np.all(deviation < 0):
+        way = "fast" if deviation[0] > 0 else "slow"
+        return (
+            f"{failed}; all are too {way}, by {100 * abs(deviation).mean():.1f} % on average: check scale, clock and "
+            "viscosity, which all drops share"
+        )
+    return f"{failed}, some too fast and some too slow: check the spheres themselves and their order of release"

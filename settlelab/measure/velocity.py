@@ -1,0 +1,177 @@
+"""Terminal velocity of one fall from its positions.
+
+First outliers are set aside, then the approach to terminal velocity is looked for and cut off, then a straight line is
+laid through what is left, a swing of the particle fitted along. Errors are taken as correlated (see `noise`).
+"""
+
+from __future__ import annotations
+
+import math
+from dataclasses import dataclass
+
+import numpy as np
+from numpy.typing import ArrayLike, NDArray
+
+from settlelab.measure.approach import Approach, find_approach
+from settlelab.measure.model import Velocity
+from settlelab.measure.noise import FloatArray, blocks, regress
+
+__all__ = ["terminal_velocity"]
+
+FEWEST = 8  # points that a velocity is taken from
+STEADY = 0.005  # share of the terminal velocity that may be missing where the steady window begins; corrected for
+WORTH_CUTTING = 0.3  # share of the points that a steady window must keep; else the approach is extrapolated
+ARRIVED = 0.98  # share of the terminal velocity below which the fall is still accelerating
+OUTLYING = 5.0  # robust standard deviations from the curve of the fall
+FEWEST_SWINGS = 2.0  # periods in the window
+SWING_SHARE = 0.6  # of the variance of the residuals
+SWING_SPEED = 0.02  # amplitude of the velocity of a swing over the terminal velocity, from which it is flagged
+
+_ROUNDS = 4  # an approach is seldom quite exponential: what is left of it is looked for again
+
+
+@dataclass(frozen=True, slots=True)
+class _Swing:
+    """A periodic residual: its columns for the regression (N, 2), and the amplitude of its velocity."""
+
+    columns: FloatArray
+    speed: float
+
+
+def terminal_velocity(time: ArrayLike, distance: ArrayLike) -> Velocity:
+    """Terminal velocity of one fall, with its standard uncertainty and how nearly it was reached.
+
+    - Points further than 5 robust standard deviations from the curve of the fall are set aside.
+    - An approach V = Vt - D exp(-t/tau) is looked for; it counts where it is 20 times likelier than a straight line.
+    - The window begins where less than 0.5 % of the terminal velocity is missing; the rest is corrected for, and half
+      the correction enters the uncertainty. Where so late a start would leave less than 30 % of the points, the end of
+      the approach is extrapolated with the uncertainty of that.
+    - `accelerating`: at the last point more than 2 % of the terminal velocity is missing (or is too much).
+    - `wobbling`: a swing with two periods or more explains 60 % of the variance about the line, and its velocity
+      reaches 2 % of the terminal one. Such a swing is fitted along with the line.
+    - `short-track`: fewer than 8 points; value and uncertainty are nan.
+
+    Parameters
+    ----------
+    time : (N,) array
+        Times of the positions [s]; gaps do no harm.
+    distance : (N,) array
+        Positions along gravity [m].
+
+    Returns
+    -------
+    Velocity
+        `fraction_of_terminal` is that of the last point; 1 where no approach is seen.
+    """
+    t, y = np.asarray(time, dtype=np.float64), np.asarray(distance, dtype=np.float64)
+    kept = np.flatnonzero(np.isfinite(t) & np.isfinite(y))
+    if len(kept) < FEWEST:
+        return Velocity(
+            value=math.nan, u=math.nan, fraction_of_terminal=math.nan, first=0, last=len(t) - 1, flags=("short-track",)
+        )
+    sign = -1.0 if y[kept[-1]] < y[kept[0]] else 1.0
+    t, y = t[kept], sign * y[kept]
+    inlying = _inlying(t, y)
+    kept, t, y = kept[inlying], t[inlying], y[inlying]
+    first, approach, steady = _steady_window(t, y)
+    fraction = 1.0 if approach is None else 1 - abs(float(approach.missing(t[-1])))
+    flags: tuple[str, ...] = ("accelerating",) if fraction < ARRIVED else ()
+    if approach is not None and not steady:
+        value, u = approach.terminal, approach.u
+    else:
+        t, y = t[first:], y[first:]
+        value, u, swing = _straight(t, y if approach is None else approach.straightened(t, y))
+        u = math.hypot(u, 0.0 if approach is None else value * _mean_missing(approach, t) / 2)
+        flags += ("wobbling",) if swing > SWING_SPEED * value else ()
+    return Velocity(
+        value=sign * value,
+        u=u,
+        fraction_of_terminal=fraction,
+        first=int(kept[first]),
+        last=int(kept[-1]),
+        flags=flags,
+    )
+
+
+def _inlying(time: FloatArray, distance: FloatArray) -> NDArray[np.bool_]:
+    """Which points lie on the curve of the fall: a line and the decay that fits best, by Huber's weights."""
+    s = (time - time[0]) / (time[-1] - time[0])
+    smallest = 1e-9 * float(np.ptp(distance)) + 1e-300
+    decays = np.exp(-s[:, None] / np.geomspace(0.02, 1.5, 9))
+    designs = np.stack([np.column_stack([np.ones_like(s), s, decay]) for decay in decays.T])
+    weight = np.ones_like(s)
+    for _ in range(6):
+        basis, _ = np.linalg.qr(designs * weight[:, None])
+        fitted = np.einsum("knp,kp->kn", basis, np.einsum("knp,n->kp", basis, weight * distance))
+        best = np.argmin(np.sum((weight * distance - fitted) ** 2, axis=1))
+        residual = np.abs(distance - fitted[best] / weight)
+        # few points lie closer to a curve fitted to them than they should
+        scale = max(1.4826 * float(np.median(residual)) * len(s) / (len(s) - 4), smallest)
+        weight = np.sqrt(np.minimum(1.0, 1.5 * scale / np.maximum(residual, smallest)))
+    inlying = residual <= OUTLYING * scale
+    return inlying if np.count_nonzero(inlying) >= FEWEST else np.ones_like(inlying)
+
+
+def _steady_window(time: FloatArray, distance: FloatArray) -> tuple[int, Approach | None, bool]:
+    """Index at which the steady window begins, the last approach that was found, and whether the window is steady."""
+    first, found = 0, None
+    for _ in range(_ROUNDS):
+        t, y = time[first:], distance[first:]
+        straight = y if found is None else found.straightened(t, y)
+        approach = find_approach(t, straight, np.empty((len(t), 0)))
+        if approach is None:
+            break
+        if found is not None:  # the first one fell short: both together are described anew
+            approach = find_approach(t, y, np.empty((len(t), 0))) or approach
+        found = approach
+        start = int(np.searchsorted(time, approach.steady_from(STEADY)))
+        if len(time) - start < max(FEWEST, WORTH_CUTTING * len(t)):
+            return first, found, False
+        if start <= first:
+            break
+        first = start
+    return first, found, True
+
+
+def _mean_missing(approach: Approach, time: FloatArray) -> float:
+    """Share of the terminal velocity that the slope of a line through the window would miss, without its sign."""
+    weight = (time - time[0]) * (time[-1] - time)
+    return abs(float(np.sum(weight * approach.missing(time)) / np.sum(weight)))
+
+
+def _straight(time: FloatArray, distance: FloatArray) -> tuple[float, float, float]:
+    """Slope of a line, its standard uncertainty, and the amplitude of the velocity of a swing about it (0 for none)."""
+    length = time[-1] - time[0]
+    s = (time - time[0]) / length
+    line = np.column_stack([np.ones_like(s), s])
+    swing = _find_swing(s, distance)
+    design = line if swing is None else np.column_stack([line, swing.columns])
+    columns = blocks(np.column_stack([design, distance - distance[0]]))
+    slope, u = regress(columns[:, :-1], columns[:, -1]).averaged(1)
+    return slope / length, u / length, 0.0 if swing is None else swing.speed / length
+
+
+def _find_swing(s: FloatArray, distance: FloatArray) -> _Swing | None:
+    """The sine about a straight line that explains most, if that is enough to be one; `s` runs from 0 to 1."""
+    y = blocks(distance[:, None])[:, 0]
+    count = len(y)
+    cycles = np.arange(FEWEST_SWINGS, count / 4, 0.25)
+    if cycles.size == 0:
+        return None
+    angle = 2 * np.pi * s[:, None] * cycles
+    waves = np.stack([blocks(np.cos(angle)), blocks(np.sin(angle))], axis=-1)  # (n, M, 2)
+    line = blocks(np.column_stack([np.ones_like(s), s]))
+    line, _ = np.linalg.qr(line)
+    residual = y - line @ (line.T @ y)
+    waves = np.moveaxis(waves - np.einsum("np,pmq->nmq", line, np.einsum("np,nmq->pmq", line, waves)), 1, 0)
+    basis, triangle = np.linalg.qr(waves)
+    part = np.einsum("mnq,n->mq", basis, residual)
+    total = float(residual @ residual)
+    explained = np.sum(part**2, axis=1) / max(total, 1e-300)
+    best = int(np.argmax(explained))
+    by_chance = cycles.size * (1 - explained[best]) ** ((count - 4) / 2)
+    if explained[best] < SWING_SHARE or by_chance > 0.01:
+        return None
+    amplitude = float(np.linalg.norm(np.linalg.solve(triangle[best], part[best])))
+    columns = np.column_stack([np.cos(angle[:, best]), np.sin(angle[:, best])])
+    return _Swing(columns=columns, speed=2 * np.pi * float(cycles[best]) * amplitude)
