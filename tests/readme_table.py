@@ -1,4 +1,7 @@
-"""The README's command table, written from the commands' own help: `python -m tests.readme_table` brings it up to date."""
+"""The README's command table, written from the commands' own help.
+
+`python -m tests.readme_table` brings it up to date.
+"""
 
 from __future__ import annotations
 
@@ -10,7 +13,7 @@ import click
 from settlelab.cli import main
 
 README = Path(__file__).parents[1] / "README.md"
-BLOCK = re.compile(r"(?<=<!-- commands: written by tests/readme_table.py -->\n).*?(?=<!-- end of commands -->)", re.DOTALL)
+BLOCK = re.compile(r"(?<=<!-- commands: see tests/readme_table.py -->\n).*?(?=<!-- end of commands -->)", re.DOTALL)
 
 
 def command_table() -> str:
