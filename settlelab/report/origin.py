@@ -8,7 +8,7 @@ from dataclasses import dataclass
 import pandas as pd
 
 from settlelab.measure.model import Measured
-from settlelab.study.model import Camera, Study
+from settlelab.study.model import Camera, Fluid, Study
 from settlelab.video.model import TrackedRecording
 
 __all__ = ["Origin", "origin"]
@@ -36,7 +36,7 @@ def _measured(drops: pd.DataFrame, study: Study) -> tuple[str, ...]:
     if any(recording.camera.graduation or recording.camera.checkerboard for recording in study.recordings):
         found.append("scale, from marks of known spacing found in the picture")
     if count := int((drops["equivalent_diameter_from"] == "silhouette").sum()):
-        found.append(f"equivalent diameter of {count} drops, from the silhouette")
+        found.append(f"equivalent diameter of {_drops(count)}, from the silhouette")
     return tuple(found)
 
 
@@ -48,13 +48,17 @@ def _typed(study: Study, drops: pd.DataFrame, tracked: Sequence[TrackedRecording
     if any(seen.clock.source == "stated" for seen in tracked):
         found.append("true frame rate of the camera")
     sources = drops.loc[~drops["equivalent_diameter_from"].isin(["silhouette", ""]), "equivalent_diameter_from"]
-    found += [f"equivalent diameter of {count} drops: {source}" for source, count in sources.value_counts().items()]
+    found += [f"equivalent diameter of {_drops(count)}: {source}" for source, count in sources.value_counts().items()]
     shapes = drops.loc[drops["sphericity_from"] != "", "sphericity_from"]
-    found += [f"sphericity of {count} drops: {source}" for source, count in shapes.value_counts().items()]
+    found += [f"sphericity of {_drops(count)}: {source}" for source, count in shapes.value_counts().items()]
     return tuple(found)
 
 
-def _fluid_inputs(fluid: object) -> list[str]:
+def _drops(count: int) -> str:
+    return "1 drop" if count == 1 else f"{count} drops"
+
+
+def _fluid_inputs(fluid: Fluid) -> list[str]:
     names = ("mass_fraction", "temperature", "density", "viscosity", "readings")
     words = {"mass_fraction": "mass fraction", "readings": "viscometer readings"}
     return [words.get(name, name) for name in names if getattr(fluid, name) is not None] or ["its name"]

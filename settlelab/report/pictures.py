@@ -49,7 +49,7 @@ def save_charts(directory: Path, measured: Measured, calibration: Calibration | 
     """The charts that the results allow, by name: drag, published, calibrated, ranking, budget."""
     drops = measured.drops
     charts = {}
-    if drops["accepted"].astype(bool).any():
+    if drops.loc[drops["accepted"].astype(bool), "reynolds"].notna().any():
         charts["drag"] = figures.drag_chart(drops, drag_curves(drops, calibration))
         shares = budget_shares(measured)
         if len(shares):

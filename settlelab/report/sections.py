@@ -30,7 +30,12 @@ __all__ = [
     "recordings_view",
 ]
 
-OUTPUTS = {"velocity": "velocity", "reynolds": "Reynolds number", "drag_coefficient": "drag coefficient"}
+OUTPUTS = {
+    "velocity": "velocity",
+    "unbounded_velocity": "unbounded velocity",
+    "reynolds": "Reynolds number",
+    "drag_coefficient": "drag coefficient",
+}
 
 
 def _share(value: object) -> str:
@@ -75,8 +80,7 @@ DROPS = (
     Show(heading="Re", field="reynolds", u="reynolds_u", unit="1"),
     Show(heading="Cd", field="drag_coefficient", u="drag_coefficient_u", unit="1"),
     Show(heading="accepted", field="accepted"),
-    Show(heading="flags", field="flags"),
-    Show(heading="reason", field="reason"),
+    Show(heading="flags and what they mean", field="remark"),
 )
 CONTROLS = (
     Show(heading="drop", field="drop", unit="1"),
@@ -127,7 +131,8 @@ def _shape_heading(lab: pd.DataFrame) -> str:
 
 def drops_view(drops: pd.DataFrame, system: UnitSystem) -> TableView:
     """Every fall that was given to a drop, accepted or not."""
-    return table_view(drops, DROPS, system, lambda row: "" if row["accepted"] else "refused")
+    remark = [reason or flags for reason, flags in zip(drops["reason"], drops["flags"], strict=True)]
+    return table_view(drops.assign(remark=remark), DROPS, system, lambda row: "" if row["accepted"] else "refused")
 
 
 def controls_view(controls: pd.DataFrame, system: UnitSystem) -> TableView:
@@ -146,8 +151,9 @@ def budget_shares(measured: Measured) -> pd.DataFrame:
     """Mean share of each input (column) in the variance of each output (row), over accepted drops, largest first."""
     accepted = measured.drops.loc[measured.drops["accepted"].astype(bool), "drop"]
     rows = measured.budget[measured.budget["drop"].isin(accepted)]
-    totals = rows.groupby(["output", "input"])["share"].sum() / max(len(accepted), 1)
-    shares = totals.unstack("input").reindex(list(OUTPUTS)).dropna(how="all").fillna(0.0)
+    totals = rows.groupby(["output", "input"])["share"].sum().unstack("input")
+    counted = rows.groupby("output")["drop"].nunique()
+    shares = totals.div(counted, axis="index").reindex(list(OUTPUTS)).dropna(how="all").fillna(0.0)
     largest = shares.max().sort_values(ascending=False, kind="stable").index
     return shares[largest].rename(index=OUTPUTS).rename_axis(index=None, columns=None)
 
@@ -168,6 +174,7 @@ def fluids_view(study: Study, drops: pd.DataFrame, system: UnitSystem) -> TableV
 
 def _fluid_row(fluid: Fluid, drops: pd.DataFrame, system: UnitSystem) -> tuple[str, ...]:
     temperature = _quantity(fluid.temperature, "°C", system)
+    drops = drops.dropna(subset=["viscosity"])
     if len(drops) == 0:
         return fluid.name, fluid.liquid, temperature, "", "", "no drop in it"
     first = drops.iloc[0]

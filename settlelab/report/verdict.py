@@ -70,8 +70,8 @@ def _drops(drops: pd.DataFrame) -> Finding:
 
 
 def _why(refused: pd.DataFrame) -> str:
-    """How often each flag stands on the refused drops."""
-    counts = Counter(flag for cell in refused["flags"] for flag in (cell.split(";") if cell else ["see reason"]))
+    """How often each flag stands first on a refused drop: that is the one that refused it."""
+    counts = Counter(cell.split(";")[0] or "without flag" for cell in refused["flags"])
     return f" Refused: {', '.join(f'{count} {flag}' for flag, count in counts.most_common())}." if counts else ""
 
 

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import math
+import re
 from collections.abc import Callable, Sequence
 from dataclasses import dataclass
 from typing import Literal
@@ -115,4 +116,4 @@ def _words(value: object) -> str:
         return "yes" if value else "no"
     if isinstance(value, float):
         return significant(value)
-    return str(value).replace(";", ", ")
+    return re.sub(r";(?! )", ", ", str(value))  # flags

@@ -35,7 +35,7 @@ def test_measuring_chain(en: tuple[float, ...], mark: str, text: str) -> None:
 def test_refused_drops_are_counted_by_their_flags() -> None:
     assert found("drops").text == "Accepted: 25 of 26 drops. Refused: 1 accelerating."
     assert found("drops", [drop(1, accepted=False, flags="edge;gap"), drop(2, accepted=False, flags="gap")]) == Finding(
-        "bad", "drops", "None of 2 drops is accepted. Refused: 2 gap, 1 edge."
+        "bad", "drops", "None of 2 drops is accepted. Refused: 1 edge, 1 gap."
     )
     assert found("drops", [drop(1)]) == Finding("good", "drops", "Accepted: the one drop.")
 
