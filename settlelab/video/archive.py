@@ -11,12 +11,11 @@ from pathlib import Path
 from typing import Any
 
 import numpy as np
-from numpy.typing import NDArray
 
 from settlelab.units import Quantity
 from settlelab.video.model import Clock, Track, TrackedRecording
 
-Arrays = dict[str, NDArray[Any]]
+Arrays = dict[str, Any]  # numpy arrays by name
 
 
 def save_tracked(tracked: TrackedRecording, path: Path) -> None:
