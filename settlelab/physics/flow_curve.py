@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
+from functools import partial
 
 import lmfit
 import numpy as np
@@ -15,15 +16,17 @@ from numpy.typing import ArrayLike
 
 from settlelab.errors import FitError
 from settlelab.physics.constants import FloatArray
+from settlelab.physics.least_squares import minimise
 from settlelab.physics.rheology import Rheology
 
-# model -> its free parameters, in the order of a covariance; what is not free is n = 1 and tau0 = 0
+# model -> its free parameters, in the order of a covariance
 MODELS: Mapping[str, tuple[str, ...]] = {
     "newtonian": ("consistency",),
     "power-law": ("consistency", "flow_index"),
     "bingham": ("consistency", "yield_stress"),
     "herschel-bulkley": ("consistency", "flow_index", "yield_stress"),
 }
+_SET = {"flow_index": 1.0, "yield_stress": 0.0}  # where the model does not free them
 _LOWEST_INDEX, _HIGHEST_INDEX = 0.05, 2.0
 
 
@@ -54,6 +57,16 @@ class _Readings:
     u: FloatArray  # over the greatest stress
     middle_rate: float
     scale: float
+
+
+@dataclass(frozen=True, slots=True)
+class _Solution:
+    """A fit in the scale of the readings."""
+
+    values: Mapping[str, float]  # all parameters, free or held
+    names: tuple[str, ...]  # free to the end
+    covariance: FloatArray  # of these
+    at_bound: tuple[str, ...]
 
 
 def fit_rheology(shear_rate: ArrayLike, shear_stress: ArrayLike, u: ArrayLike, model: str = "best") -> RheologyFit:
@@ -121,64 +134,86 @@ def _fit(readings: _Readings, model: str) -> RheologyFit:
     count = np.unique(readings.rate).size
     if count < len(free):
         raise FitError(f"a {model} fluid needs viscometer readings at {len(free)} or more shear rates, {count} found")
-    parameters = _start(readings, free)
-    result = lmfit.minimize(_residuals, parameters, args=(readings,), scale_covar=False)
-    at_bound: tuple[str, ...] = ()
-    while (name := _touching(result)) is not None:
-        at_bound += (name,)
-        parameters = _held(result.params, name)
-        result = lmfit.minimize(_residuals, parameters, args=(readings,), scale_covar=False)
-    if not result.success or (result.var_names and result.covar is None):
+    solution = _solve(readings, free)
+    if solution is None:
         raise FitError(f"the viscometer readings do not determine a {model} fluid")
-    return _in_si(result, readings, model, at_bound)
+    return _in_si(solution, readings, model)
+
+
+def _solve(readings: _Readings, free: Sequence[str]) -> _Solution | None:
+    """Least squares; a parameter that reaches a bound is held there and the others are fitted anew."""
+    parameters, values = _start(readings, free), dict(_SET)
+    at_bound: tuple[str, ...] = ()
+    while True:
+        result = minimise(partial(_residuals, readings=readings, values=dict(values)), parameters)
+        values |= result.params.valuesdict()
+        names = tuple(result.var_names)
+        covariance = _covariance(readings, values, names)
+        if not result.success or covariance is None:
+            return None
+        reached = _reached(result.params, np.sqrt(np.diag(covariance)))
+        if reached is None:
+            return _Solution(values, names, covariance, at_bound)
+        at_bound += (reached,)
+        parameters = result.params
+        values[reached] = _held(parameters.pop(reached))
 
 
 def _start(readings: _Readings, free: Sequence[str]) -> lmfit.Parameters:
-    """Starting values from a straight line in logarithms, strictly inside the bounds."""
+    """Starting values of the free parameters from a straight line in logarithms, strictly inside the bounds."""
     positive = readings.stress > 0
-    index = 1.0
-    if np.unique(readings.rate[positive]).size > 1 and "flow_index" in free:
-        index = float(np.polyfit(np.log(readings.rate[positive]), np.log(readings.stress[positive]), 1)[0])
     parameters = lmfit.Parameters()
     parameters.add("consistency", value=float(np.median(readings.stress[positive])), min=0)
-    index = float(np.clip(index, 2 * _LOWEST_INDEX, 0.9 * _HIGHEST_INDEX))
-    parameters.add("flow_index", value=index, min=_LOWEST_INDEX, max=_HIGHEST_INDEX, vary="flow_index" in free)
-    yields = "yield_stress" in free
-    start = max(float(np.min(readings.stress)) / 2, 1e-3) if yields else 0.0
-    parameters.add("yield_stress", value=start, min=0, vary=yields)
+    if "flow_index" in free:
+        index = 1.0
+        if np.unique(readings.rate[positive]).size > 1:
+            index = float(np.polyfit(np.log(readings.rate[positive]), np.log(readings.stress[positive]), 1)[0])
+        start = float(np.clip(index, 2 * _LOWEST_INDEX, 0.9 * _HIGHEST_INDEX))
+        parameters.add("flow_index", value=start, min=_LOWEST_INDEX, max=_HIGHEST_INDEX)
+    if "yield_stress" in free:
+        parameters.add("yield_stress", value=max(float(np.min(readings.stress)) / 2, 1e-3), min=0)
     return parameters
 
 
-def _residuals(parameters: lmfit.Parameters, readings: _Readings) -> FloatArray:
-    values = parameters.valuesdict()
-    stress = values["yield_stress"] + values["consistency"] * readings.rate ** values["flow_index"]
+def _residuals(parameters: lmfit.Parameters, readings: _Readings, values: Mapping[str, float]) -> FloatArray:
+    value = dict(values) | parameters.valuesdict()
+    stress = value["yield_stress"] + value["consistency"] * readings.rate ** value["flow_index"]
     return np.asarray((stress - readings.stress) / readings.u)
 
 
-def _touching(result: lmfit.minimizer.MinimizerResult) -> str | None:
-    """A free parameter whose value ± u reaches a bound, or whose u could not be found; the yield stress before n."""
-    for name in ("yield_stress", "flow_index"):
-        parameter = result.params[name]
-        u = parameter.stderr if parameter.stderr is not None else float("inf")
-        if parameter.vary and (parameter.value - u <= parameter.min or parameter.value + u >= parameter.max):
-            return name
-    return None
+def _covariance(readings: _Readings, values: Mapping[str, float], names: Sequence[str]) -> FloatArray | None:
+    """Covariance of the free parameters, from the uncertainty of the readings alone; None where it is undetermined."""
+    power = readings.rate ** values["flow_index"]
+    slopes = {
+        "consistency": power,
+        "flow_index": values["consistency"] * power * np.log(readings.rate),
+        "yield_stress": np.ones_like(power),
+    }
+    design = np.column_stack([slopes[name] / readings.u for name in names])
+    information = design.T @ design
+    if np.linalg.matrix_rank(information, hermitian=True) < len(names):
+        return None
+    return np.asarray(np.linalg.inv(information))
 
 
-def _held(parameters: lmfit.Parameters, name: str) -> lmfit.Parameters:
-    """The same parameters with one held where it is, or on the bound if it lies there but for rounding."""
-    held = parameters.copy()
-    value = min(
-        (held[name].min, held[name].max, held[name].value), key=lambda end: round(abs(end - held[name].value), 6)
-    )
-    held[name].set(value=value, vary=False)
-    return held
+def _reached(parameters: lmfit.Parameters, u: FloatArray) -> str | None:
+    """A parameter whose value ± u reaches a bound, the yield stress before the flow index."""
+    at_bound = [
+        name
+        for (name, parameter), spread in zip(parameters.items(), u, strict=True)
+        if parameter.value - spread <= parameter.min or parameter.value + spread >= parameter.max
+    ]
+    return next((name for name in ("yield_stress", "flow_index") if name in at_bound), None)
 
 
-def _in_si(
-    result: lmfit.minimizer.MinimizerResult, readings: _Readings, model: str, at_bound: tuple[str, ...]
-) -> RheologyFit:
-    values, names = result.params.valuesdict(), tuple(result.var_names)
+def _held(parameter: lmfit.Parameter) -> float:
+    """The fitted value, or the bound if it lies there but for rounding."""
+    ends = (parameter.min, parameter.max, parameter.value)
+    return float(min(ends, key=lambda end: round(abs(end - parameter.value), 6)))
+
+
+def _in_si(solution: _Solution, readings: _Readings, model: str) -> RheologyFit:
+    values, names = solution.values, solution.names
     index = values["flow_index"]
     consistency = values["consistency"] * readings.scale / readings.middle_rate**index
     # K = S scale / r^n, n and tau0 scale: rows of the Jacobian by output, columns by fitted parameter
@@ -187,19 +222,21 @@ def _in_si(
     jacobian[at, at] = readings.scale / readings.middle_rate**index
     if "flow_index" in names:
         jacobian[at, names.index("flow_index")] = -consistency * np.log(readings.middle_rate)
-    count, k = readings.rate.size, len(MODELS[model])
-    few = count - k - 1 <= 0
-    chi_square = float(result.chisqr)
-    penalty = float("inf") if few else 2 * k + 2 * k * (k + 1) / (count - k - 1)
+    chi_square = float(np.sum(_residuals(lmfit.Parameters(), readings, values) ** 2))
     return RheologyFit(
         rheology=Rheology(
             consistency=consistency, flow_index=index, yield_stress=values["yield_stress"] * readings.scale
         ),
         model=model,
         names=names,
-        covariance=jacobian @ np.asarray(result.covar) @ jacobian.T,
-        at_bound=at_bound,
+        covariance=jacobian @ solution.covariance @ jacobian.T,
+        at_bound=solution.at_bound,
         chi_square=chi_square,
-        degrees_of_freedom=count - len(names),
-        aicc={model: chi_square + penalty},
+        degrees_of_freedom=readings.rate.size - len(names),
+        aicc={model: chi_square + _penalty(readings.rate.size, len(MODELS[model]))},
     )
+
+
+def _penalty(count: int, k: int) -> float:
+    """What AICc adds to chi square for k parameters fitted to so many readings."""
+    return 2 * k + 2 * k * (k + 1) / (count - k - 1) if count > k + 1 else float("inf")

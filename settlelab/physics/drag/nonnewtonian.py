@@ -132,7 +132,8 @@ def held(
     Returns
     -------
     (N,) bool array
-        True where the yield number tau0/(g d |drho|) reaches 0.0477. Static tests scatter from 0.04 to 0.2.
+        True where the yield number tau0/(g d |drho|) reaches 0.0477. Static tests of spheres scatter from 0.04 to 0.2;
+        for other bodies there is no agreed value, and that of the sphere is used.
 
     References
     ----------

@@ -10,7 +10,8 @@ import fluids.drag
 import numpy as np
 import pytest
 
-from settlelab.physics.drag import DRAG
+from settlelab.physics.drag import DRAG, terminal_velocity
+from settlelab.physics.rheology import Rheology
 
 SAME = {
     "stokes-1851": fluids.drag.Stokes,
@@ -37,3 +38,19 @@ def test_name_without_its_constants() -> None:
     """`Clift_Gauvin` of the package is the Brown-Lawler re-fit: 2 % from ours at Re 1, the reference sheet says."""
     ours = DRAG["clift-gauvin-1971"].drag_coefficient(1.0)
     assert abs(fluids.drag.Clift_Gauvin(1.0) / ours - 1) > 1e-3
+
+
+@pytest.mark.parametrize(
+    ("name", "method"), [("cheng-2009", "Cheng"), ("haider-levenspiel-1989-sphere", "Haider_Levenspiel")]
+)
+@pytest.mark.parametrize("diameter", [1e-4, 1e-3, 1e-2])
+def test_same_terminal_velocity(name: str, method: str, diameter: float) -> None:
+    theirs = fluids.drag.v_terminal(D=diameter, rhop=2600.0, rho=1100.0, mu=0.02, Method=method)
+    ours = terminal_velocity(
+        DRAG[name].drag_coefficient,
+        diameter=diameter,
+        particle_density=2600,
+        fluid_density=1100,
+        rheology=Rheology(consistency=0.02),
+    )
+    assert ours.velocity == pytest.approx(theirs, rel=1e-6)
