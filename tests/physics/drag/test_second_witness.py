@@ -43,7 +43,7 @@ def test_name_without_its_constants() -> None:
 @pytest.mark.parametrize(
     ("name", "method"), [("cheng-2009", "Cheng"), ("haider-levenspiel-1989-sphere", "Haider_Levenspiel")]
 )
-@pytest.mark.parametrize("diameter", [1e-4, 1e-3, 1e-2])
+@pytest.mark.parametrize("diameter", [4e-4, 1e-3, 1e-2])  # below Re 0.01 the package falls back on Stokes
 def test_same_terminal_velocity(name: str, method: str, diameter: float) -> None:
     theirs = fluids.drag.v_terminal(D=diameter, rhop=2600.0, rho=1100.0, mu=0.02, Method=method)
     ours = terminal_velocity(
