@@ -27,7 +27,7 @@ MODELS: Mapping[str, tuple[str, ...]] = {
     "herschel-bulkley": ("consistency", "flow_index", "yield_stress"),
 }
 _SET = {"flow_index": 1.0, "yield_stress": 0.0}  # where the model does not free them
-_LOWEST_INDEX, _HIGHEST_INDEX = 0.05, 2.0
+_LOWEST_INDEX, _HIGHEST_INDEX = 0.05, 1.5
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

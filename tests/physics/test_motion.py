@@ -96,7 +96,7 @@ def test_history_delays() -> None:
     assert slow.velocity[-1] == pytest.approx(plain.velocity[-1], rel=1e-3)
 
 
-@settings(max_examples=12)
+@settings(max_examples=8)
 @given(st.floats(5e-4, 8e-3), st.floats(1100, 8000), st.floats(0.35, 1.0), st.floats(0.3, 1.0))
 def test_ends_at_terminal_velocity(diameter: float, density: float, flow_index: float, wall: float) -> None:
     mud = Rheology(consistency=0.3, flow_index=flow_index, yield_stress=0.05)

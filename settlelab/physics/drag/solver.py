@@ -73,12 +73,14 @@ def terminal_velocity(
     Raises
     ------
     ValueError
-        A diameter or a density of 0 and less.
+        A diameter or a density of 0 and less, a flow index of 2 and more.
     """
     inputs = (diameter, particle_density, fluid_density, *rheology.arrays())
     d, rho_s, rho, consistency, n, tau0 = np.broadcast_arrays(*(np.asarray(item, dtype=np.float64) for item in inputs))
     if np.any(d <= 0) or np.any(rho <= 0) or np.any(rho_s <= 0):
         raise ValueError("diameters and densities must be above 0")
+    if np.any(n >= 2):
+        raise ValueError("a flow index must be below 2: drag would no longer grow with velocity")
     fluid = Rheology(consistency=consistency, flow_index=n, yield_stress=tau0)
     stopped = held(diameter=d, density_difference=rho_s - rho, yield_stress=tau0, gravity=gravity)
     weight = np.where(stopped | (rho_s == rho), np.nan, 4 / 3 * gravity * d * np.abs(rho_s - rho) / rho)

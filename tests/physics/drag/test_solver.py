@@ -250,6 +250,9 @@ def test_shapes_and_nan() -> None:
 def test_impossible_inputs() -> None:
     with pytest.raises(ValueError, match="diameters and densities must be above 0"):
         terminal_velocity(CHENG, diameter=0.0, particle_density=2000, fluid_density=1000, rheology=WATER)
+    thickening = Rheology(consistency=1.0, flow_index=2.0)
+    with pytest.raises(ValueError, match="flow index must be below 2"):
+        terminal_velocity(CHENG, diameter=1e-3, particle_density=2000, fluid_density=1000, rheology=thickening)
 
 
 def test_drag_coefficient_from_velocity_is_the_inverse() -> None:
