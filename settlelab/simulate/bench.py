@@ -89,14 +89,14 @@ class Bench:
         return f"{value:.2f} ± {self.u.temperature:.2f} °C"
 
     def particle_row(self, particle: Particle) -> list[str]:
-        """Name, lot, mass [mg], u(mass) [mg], density with its uncertainty [kg/m3], three axes [mm] and their u."""
+        """The cells under PARTICLE_HEADINGS."""
         body, u = particle.body, self.u
         mass = particle.density * np.pi / 6 * body.equivalent_diameter**3
         # who measures a grain calls the longest reading the long axis
         axes = sorted((self.number(axis, u.axis, 1e3) for axis in body.axes), key=float, reverse=True)
         weighed = [self.number(mass, u.mass, 1e6), f"{u.mass * 1e6:g}"]
         density = self.read(particle.density, u.density, "")
-        return [particle.name, particle.lot, *weighed, density, *axes, f"{u.axis * 1e3:g}"]
+        return [particle.name, particle.lot, *weighed, density, *axes, *[f"{u.axis * 1e3:g}"] * 3]
 
     def viscometer_rows(self, rheology: Rheology) -> list[list[str]]:
         """Speed [rpm], dial [deg] and u(dial) [deg] of a rotor-bob viscometer, geometry R1B1."""

@@ -110,7 +110,7 @@ def write_truth(truth: pd.DataFrame, path: Path) -> Path:
 def _write_tables(study: SimulatedStudy, tables: Path, names: Sequence[str], bench: Bench) -> list[Path]:
     written = []
     if study.cuttings:
-        rows = [_with_all_u(bench.particle_row(particle)) for particle in study.cuttings]
+        rows = [bench.particle_row(particle) for particle in study.cuttings]
         written.append(_write_csv(tables / "particles.csv", PARTICLE_HEADINGS, rows))
     for fluid in study.fluids:
         if fluid.kind == "measured":
@@ -119,10 +119,6 @@ def _write_tables(study: SimulatedStudy, tables: Path, names: Sequence[str], ben
     toml = tables / "study.toml"
     toml.write_bytes(("\n\n".join(_sections(study, names, bench)) + "\n").encode())
     return [toml, *written]
-
-
-def _with_all_u(row: list[str]) -> list[str]:
-    return [*row, row[-1], row[-1]]
 
 
 def _write_csv(path: Path, headings: Sequence[str], rows: Sequence[Sequence[str]]) -> Path:
