@@ -12,7 +12,9 @@ from settlelab.cli import console
 
 @click.command("run")
 @click.argument("study", type=click.Path(path_type=Path))
-@click.option("--out", type=click.Path(path_type=Path), help="Folder for the results [default: results beside the study].")
+@click.option(
+    "--out", type=click.Path(path_type=Path), help="Folder for the results [default: results beside the study]."
+)
 @click.option(
     "--workers",
     type=click.IntRange(min=1),
@@ -27,5 +29,6 @@ def command(study: Path, out: Path | None, workers: int) -> None:
     with console.progress("tracking") as progress:
         result = run_study(study, out=out, workers=workers, progress=progress)
     console.written(result.written)
+    for finding in result.findings:
+        click.echo(f"{finding.topic}: {finding.text}")
     console.doubts(result.notes)
-    click.echo(result.summary())
