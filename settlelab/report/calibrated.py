@@ -94,7 +94,7 @@ def _plain(key: str) -> str:
 
 def _scatter(card: Card) -> str:
     scatter = card.scatter
-    told = [f"single drops of a new particle scatter about the law by {significant(100 * scatter.single_drop, 2)} %"]
+    told = [f"Single drops of a new particle scatter about the law by {significant(100 * scatter.single_drop, 2)} %"]
     told.append(f"particles by {significant(100 * scatter.between_particles, 2)} %")
     if scatter.repeatability > 0:
         told.append(f"drops of one particle by {significant(100 * scatter.repeatability, 2)} %")

@@ -29,10 +29,11 @@ __all__ = ["write_report"]
 SIGNATURES = ("Tested by", "Checked by", "Approved by")
 MEDIA_TYPES = {".png": "image/png", ".svg": "image/svg+xml"}
 LAB_NOTE = (
-    "U is the expanded uncertainty (k = 2, about 95 %). Of a particle: repeatability of its drops, pooled over all"
-    " particles, and what its drops share (scale, clock, fluid, walls, size). Of a lot: scatter of its particles and"
-    " what all share; the mean is one for the lot that the particles were taken from. Predictions are for unbounded"
-    " fluid and compare with the unbounded velocity; those of the calibrated form are on drops that it was fitted to."
+    "U is the expanded uncertainty (k = 2, about 95 %) of the mean: the repeatability of drops, pooled over all"
+    " particles, and what the drops share (scale, clock, fluid, walls, size). The mean of a lot is that of these very"
+    " particles; scatter is the relative standard deviation of the drops of a particle, or of the particles of a lot."
+    " Predictions are for unbounded fluid and compare with the unbounded velocity; those of a calibrated form are on drops"
+    " that it was fitted to."
 )
 CAUTIONS = (
     "A fall through still fluid in a column is not a design for hole cleaning: in a well the fluid moves and shears,"

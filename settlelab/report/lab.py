@@ -29,6 +29,7 @@ if TYPE_CHECKING:
 
 __all__ = ["LabRow", "lab_table"]
 
+PARTS = [f"{quantity}_{part}_u" for quantity in QUANTITIES for part in ("own", "shared")]  # standard uncertainties
 CONTROL = "control"  # stands for the lot in the rows of control spheres
 SHAPES = ("sphericity", "corey_shape_factor", "circularity", "aspect_ratio")  # the first one known is shown
 Percent = Annotated[float, Unit("%")]
@@ -87,7 +88,7 @@ def lab_table(measured: Measured, calibration: Calibration | None) -> pd.DataFra
     drops = _with_predictions(drops, calibration)
     cuttings, controls = (drops[drops["control"].astype(bool) == control] for control in (False, True))
     of_particles = [*_particle_rows(cuttings), *_particle_rows(controls)]
-    rows = pd.DataFrame(of_particles, columns=[*LabRow.__dataclass_fields__, *(f"{q}_shared_u" for q in QUANTITIES)])
+    rows = pd.DataFrame(of_particles, columns=[*LabRow.__dataclass_fields__, *PARTS])
     in_lots = rows[(rows["lot"] != "") & (rows["lot"] != CONTROL)]
     of_lots = [_lot_row(group) for _, group in _groups(in_lots, ["lot", "fluid"])]
     table = pd.DataFrame([*of_particles, *of_lots], columns=list(LabRow.__dataclass_fields__))
@@ -150,8 +151,9 @@ def _particle_row(drops: pd.DataFrame, pooled: dict[str, Repeatability]) -> dict
     }
     for quantity in QUANTITIES:
         row[quantity] = float(used[quantity].mean())
-        row[f"{quantity}_expanded_u"] = 2 * particle_u(used, quantity, pooled[quantity])
-        row[f"{quantity}_shared_u"] = used[f"{quantity}_shared_u"].mean()
+        own, shared = particle_u(used, quantity, pooled[quantity])
+        row |= {f"{quantity}_own_u": own, f"{quantity}_shared_u": shared}
+        row[f"{quantity}_expanded_u"] = 2 * math.hypot(own, shared)
     return row | _compared(used["published_velocity"].mean(), used["calibrated_velocity"].mean(), row)
 
 
@@ -191,7 +193,8 @@ def _lot_row(particles: pd.DataFrame) -> dict[str, object]:
     row |= {name: used[name].mean() for name in averaged}
     for quantity in QUANTITIES:
         row[quantity] = used[quantity].mean()
-        row[f"{quantity}_expanded_u"] = 2 * lot_u(used, quantity)
+        parts = used[[f"{quantity}_own_u", f"{quantity}_shared_u"]].dropna().to_numpy(dtype=np.float64)
+        row[f"{quantity}_expanded_u"] = 2 * lot_u(*parts.T)
     return row
 
 

@@ -6,9 +6,9 @@
   nothing was dropped twice, the fit counts: the scatter of replicates contains it already, so the larger is taken.
 - *Common part*: scale, clock, fluid, walls, and the size and density of the particle itself are the same in every
   drop; they do not average down and are added in quadrature.
-- A *lot* is the mean of its particles: their scatter over the root of their number (Student factor again) contains
-  what is peculiar to a particle; only what all particles share is added. Both are figures for the lot that the
-  particles were taken from, not for those few particles alone.
+- A *lot* is the mean of its particles, and its uncertainty is of the mean of these very particles: what is peculiar to
+  a particle (repeatability, size, density) averages down, what all share does not. How much the particles differ
+  among themselves, by size and shape above all, is no uncertainty of that mean and is told apart, as a scatter.
 """
 
 from __future__ import annotations
@@ -52,7 +52,7 @@ def student_factor(degrees: int) -> float:
 
 
 def with_parts(drops: pd.DataFrame, budget: pd.DataFrame) -> pd.DataFrame:
-    """Each quantity's uncertainty in parts: of the fall, common to the particle's drops, shared by all particles.
+    """Each quantity's uncertainty in three parts: of the fall, of the particle, shared by all particles.
 
     What the budget does not attribute counts as shared, which never understates a mean.
     """
@@ -65,7 +65,7 @@ def with_parts(drops: pd.DataFrame, budget: pd.DataFrame) -> pd.DataFrame:
         )
         u = parts[f"{quantity}_u"]
         parts[f"{quantity}_fall_u"] = u * np.sqrt(fall)
-        parts[f"{quantity}_common_u"] = u * np.sqrt(1 - fall)
+        parts[f"{quantity}_particle_u"] = u * np.sqrt(particle)
         parts[f"{quantity}_shared_u"] = u * np.sqrt((1 - fall - particle).clip(lower=0.0))
     return parts
 
@@ -79,19 +79,26 @@ def repeatability(drops: pd.DataFrame, quantity: str) -> Repeatability:
     return Repeatability(math.sqrt(squares / degrees) if degrees else math.nan, degrees)
 
 
-def particle_u(drops: pd.DataFrame, quantity: str, pooled: Repeatability) -> float:
-    """Standard uncertainty of a particle's mean, from its accepted drops with their parts; nan without any."""
+def particle_u(drops: pd.DataFrame, quantity: str, pooled: Repeatability) -> tuple[float, float]:
+    """Standard uncertainty of a particle's mean over its accepted drops, in two parts; nan without any.
+
+    Returns
+    -------
+    own : float
+        What is peculiar to the particle: repeatability of its drops, its size and density.
+    shared : float
+        What it shares with every other particle.
+    """
     known = drops.dropna(subset=[quantity])
     if len(known) == 0:
-        return math.nan
+        return math.nan, math.nan
     random = pooled.of_mean(known[quantity].to_numpy(), known[f"{quantity}_fall_u"].to_numpy())
-    return math.hypot(random, float(known[f"{quantity}_common_u"].mean()))
+    particle, shared = (float(known[f"{quantity}_{part}_u"].mean()) for part in ("particle", "shared"))
+    return math.hypot(random, particle), shared
 
 
-def lot_u(particles: pd.DataFrame, quantity: str) -> float:
-    """Standard uncertainty of a lot's mean from the rows of its particles; of a single one that particle's own."""
-    known = particles.dropna(subset=[quantity])
-    if len(known) < 2:
-        return float(known[f"{quantity}_expanded_u"].mean()) / 2
-    between = student_factor(len(known) - 1) * float(known[quantity].std(ddof=1)) / math.sqrt(len(known))
-    return math.hypot(between, float(known[f"{quantity}_shared_u"].mean()))
+def lot_u(own: FloatArray, shared: FloatArray) -> float:
+    """Standard uncertainty of the mean of particles, from the two parts of each."""
+    if len(own) == 0:
+        return math.nan
+    return math.hypot(float(np.sqrt(np.sum(own**2))) / len(own), float(np.mean(shared)))

@@ -21,6 +21,8 @@ if TYPE_CHECKING:
 
 __all__ = ["save_charts", "save_overlays"]
 
+RANKED = 16  # rows of the ranking that its chart shows
+
 
 def save_overlays(
     directory: Path, study: Study, drops: pd.DataFrame, tracked: Sequence[TrackedRecording]
@@ -55,7 +57,7 @@ def save_charts(directory: Path, measured: Measured, calibration: Calibration | 
         if len(shares):
             charts["budget"] = figures.budget_bars(shares)
     if calibration is not None:
-        charts["ranking"] = figures.ranking_bars(calibration.ranking)
+        charts["ranking"] = figures.ranking_bars(calibration.ranking.head(RANKED))
         chosen = [("calibrated", calibration.chosen.name)] if calibration.chosen else []
         for name, method in [("published", calibration.best_published), *chosen]:
             charts[name] = figures.measured_against_predicted(_pairs(drops, calibration, method), title=method)

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Sequence
 from dataclasses import replace
 from typing import TYPE_CHECKING
@@ -10,7 +11,7 @@ import numpy as np
 import pandas as pd
 
 from settlelab.measure.model import Measured
-from settlelab.report.numbers import percent, significant
+from settlelab.report.numbers import MISSING, percent, significant
 from settlelab.report.views import Show, TableView, UnitSystem, quantity_text, table_view
 from settlelab.study.model import Column, Fluid, Study
 from settlelab.units import Quantity
@@ -41,6 +42,8 @@ OUTPUTS = {
 def _share(value: object) -> str:
     """A fraction in percent, to a tenth."""
     share = 100 * float(str(value))
+    if math.isnan(share):
+        return MISSING
     return f"{share:.1f}" if share >= 0.05 else ("–" if share == 0 else "< 0.1")
 
 
@@ -52,6 +55,15 @@ def _plain_percent(value: object) -> str:
     return significant(float(str(value)), 3)
 
 
+def _three_decimals(value: object) -> str:
+    factor = float(str(value))
+    return f"{factor:.3f}" if math.isfinite(factor) else MISSING
+
+
+def _whole_percent(value: object) -> str:
+    return f"{float(str(value)):.0f}"
+
+
 LAB = (
     Show(heading="lot", field="lot"),
     Show(heading="particle", field="particle"),
@@ -61,7 +73,8 @@ LAB = (
     Show(heading="density", field="density", unit="kg/m3"),
     Show(heading="shape", field="shape", unit="1", digits=3),
     Show(heading="velocity in the column ± U", field="velocity", u="velocity_expanded_u", unit="mm/s"),
-    Show(heading="wall factor", field="wall_factor", unit="1", digits=3),
+    Show(heading="scatter, %", field="velocity_scatter", unit="1", form=_share),
+    Show(heading="wall factor", field="wall_factor", unit="1", form=_three_decimals),
     Show(heading="unbounded velocity ± U", field="unbounded_velocity", u="unbounded_velocity_expanded_u", unit="mm/s"),
     Show(heading="Re ± U", field="reynolds", u="reynolds_expanded_u", unit="1"),
     Show(heading="Cd ± U", field="drag_coefficient", u="drag_coefficient_expanded_u", unit="1"),
@@ -95,13 +108,13 @@ RANKING = (
     Show(heading="correlation", field="method"),
     Show(heading="kind", field="kind"),
     Show(heading="drops", field="drops", unit="1"),
-    Show(heading="inside its range, %", field="in_range_percent", unit="1", form=_plain_percent),
+    Show(heading="inside its range, %", field="in_range_percent", unit="1", form=_whole_percent),
     Show(heading="bias, %", field="bias_percent", unit="1", form=_percent),
     Show(heading="root mean square, %", field="rms_percent", unit="1", form=_plain_percent),
     Show(heading="cross-validated, %", field="cv_rms_percent", unit="1", form=_plain_percent),
     Show(heading="largest, %", field="max_percent", unit="1", form=_percent),
-    Show(heading="within 10 %", field="within_10_percent", unit="1", form=_plain_percent),
-    Show(heading="within 20 %", field="within_20_percent", unit="1", form=_plain_percent),
+    Show(heading="within 10 %", field="within_10_percent", unit="1", form=_whole_percent),
+    Show(heading="within 20 %", field="within_20_percent", unit="1", form=_whole_percent),
     Show(heading="as good as the best of its kind", field="as_good_as_best"),
     Show(heading="source", field="source"),
 )

@@ -16,6 +16,8 @@ if TYPE_CHECKING:
 
 __all__ = ["Finding", "findings"]
 
+CLOSE = 10.0  # %, root mean square up to which a law is good enough for a velocity
+
 
 @dataclass(frozen=True, slots=True)
 class Finding:
@@ -84,12 +86,13 @@ def _published(calibration: Calibration) -> Finding:
         f" bias {percent(bias)} %, {int(row['drops'])} drops, "
         + ("all inside its range." if inside == 100 else f"{significant(inside, 2)} % inside its range.")
     )
-    return Finding("good" if rms <= 10 else "doubt", "published correlation", told)
+    return Finding("good" if rms <= CLOSE else "doubt", "published correlation", told)
 
 
 def _calibrated(calibration: Calibration) -> Finding:
-    """The verdict of the calibration in its own words; where a published law is kept, the ranking needs a look."""
-    return Finding("good" if calibration.chosen else "doubt", "calibration", calibration.notes[0])
+    """The verdict of the calibration in its own words."""
+    rms = float(_ranked(calibration, calibration.card.name)["rms_percent"])
+    return Finding("good" if rms <= CLOSE else "doubt", "calibration", calibration.notes[0])
 
 
 def _ranked(calibration: Calibration, method: str) -> pd.Series:

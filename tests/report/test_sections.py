@@ -30,11 +30,8 @@ def test_lab_view_names_shape_and_lots() -> None:
 
 
 def test_lab_view_of_several_fluids_and_shapes() -> None:
-    drops = [
-        drop(1, particle="A-01", lot="A"),
-        drop(2, particle="A-02", lot="A", fluid="polymer", sphericity=float("nan")),
-    ]
-    drops[1]["corey_shape_factor"] = 0.6
+    other = {"fluid": "polymer", "sphericity": float("nan"), "corey_shape_factor": 0.6}
+    drops = [drop(1, particle="A-01", lot="A"), drop(2, particle="A-02", lot="A", **other)]
     row = texts(sections.lab_view(lab_table(measured_of(drops), None), "lab"))[1]
     assert (row["fluid"], row["shape"]) == ("polymer", "0.600")
 
@@ -50,10 +47,8 @@ def test_drops_view_tells_why() -> None:
 
 def test_budget_is_the_mean_over_accepted_drops() -> None:
     drops = [drop(1), drop(2), drop(3, accepted=False)]
-    budget = pd.DataFrame(
-        [(1, "velocity", "track", 1.0), (2, "velocity", "track", 0.5), (2, "velocity", "scale", 0.5), (3, "velocity", "clock", 1.0)],
-        columns=["drop", "output", "input", "share"],
-    )  # fmt: skip
+    shares_of_drops = [(1, "track", 1.0), (2, "track", 0.5), (2, "scale", 0.5), (3, "clock", 1.0)]
+    budget = pd.DataFrame(shares_of_drops, columns=["drop", "input", "share"]).assign(output="velocity")
     shares = sections.budget_shares(measured_of(drops, budget=budget))
     assert shares.loc["velocity"].to_dict() == {"track": 0.75, "scale": 0.25}
     assert texts(sections.budget_view(shares))[0] == {"source": "track", "velocity, %": "75.0"}
