@@ -69,8 +69,8 @@ def _ticks(container: FloatArray, number: np.ndarray) -> tuple[FloatArray, float
     intervals = np.diff(container)
     if len(intervals) == 0 or not np.all(np.isfinite(container)) or np.any(intervals <= 0):
         return counted, None, bool(len(intervals) == 0 or not np.all(np.isfinite(container)))
-    interval = float(np.median(intervals))
-    for _ in range(3):  # rounded time stamps bias the median; the whole length does not
+    interval = float(intervals[intervals < 1.6 * np.median(intervals)].mean())
+    for _ in range(3):  # rounded time stamps bias single intervals; the whole length does not
         whole = np.maximum(np.rint(intervals / interval), 1)
         interval = float(container[-1] / whole.sum())
     grid = np.concatenate([[0.0], np.cumsum(whole)])

@@ -4,16 +4,18 @@ from __future__ import annotations
 
 from typing import NamedTuple
 
-import cv2
 import numpy as np
 from numpy.typing import NDArray
+from scipy.signal import find_peaks
 
 from settlelab.video.model import FloatArray
 
 FEWEST_MARKS = 5
 STRIPS = 40  # upright strips of the picture, overlapping by half
 CLOSEST = 6.0  # px between marks
-CLEAR = 6.0  # times the usual change along a strip: a mark
+CLEAR = 6.0  # times the usual bend from pixel to pixel along a strip: a mark
+LIKE_THE_REST = 0.5  # of the usual height of a mark above what is around it
+MARK_REACH = 3  # px on either side of its middle
 OUT_OF_STEP = 0.15  # of the spacing: not a mark of the graduation
 AGREEING = 0.7  # of the places where marks are due must show one
 
@@ -57,19 +59,15 @@ def _better(one: Spacing, other: Spacing) -> bool:
 
 def _marks(profile: FloatArray) -> FloatArray:
     """Sub-pixel places of the dark marks along a strip: grey-weighted centres of what stands out."""
-    length = len(profile)
-    column = profile.reshape(-1, 1).astype(np.float32)
-    slow = cv2.GaussianBlur(column, (1, 0), sigmaX=0.1, sigmaY=max(4.0, length / 60)).ravel().astype(np.float64)
-    dip = slow - profile
-    usual = 1.4826 * float(np.median(np.abs(dip))) + 0.05
-    above = np.concatenate([[False], dip > CLEAR * usual, [False]])
-    starts, ends = np.flatnonzero(above[1:] & ~above[:-1]), np.flatnonzero(~above[1:] & above[:-1])
+    rough = float(np.median(np.abs(np.diff(profile, 2)))) + 0.02
+    peaks, shape = find_peaks(-profile, prominence=CLEAR * rough, distance=CLOSEST)
+    if len(peaks) == 0:
+        return np.array([])
+    prominent = shape["prominences"] > LIKE_THE_REST * np.quantile(shape["prominences"], 0.8)
     places = []
-    for start, end in zip(starts, ends, strict=True):
-        if start == 0 or end == length:
-            continue
-        around = np.arange(max(0, int(start) - 2), min(length, int(end) + 2))
-        weight = np.maximum(dip[around], 0.0)
+    for peak, height in zip(peaks[prominent], shape["prominences"][prominent], strict=True):
+        around = np.arange(max(0, int(peak) - MARK_REACH), min(len(profile), int(peak) + MARK_REACH + 1))
+        weight = np.maximum(profile[peak] + 0.7 * height - profile[around], 0.0)
         places.append(float(weight @ around / weight.sum()))
     return np.array(places)
 

@@ -17,6 +17,7 @@ from numpy.typing import NDArray
 
 from settlelab.video.background import DARKEST, Background, Image, texture
 
+FloatArray = NDArray[np.float64]
 Mask = NDArray[np.uint8]
 
 SMOOTHING = 0.8  # px, standard deviation of the Gaussian before the threshold
@@ -30,6 +31,8 @@ TEXTURE_SHARE = 0.08  # of the difference of neighbouring pixels: what a shake o
 SMALLEST_AREA = 3.0  # px2
 MARK_CONTRAST = 0.05  # of a strong object's contrast: compression leaves marks that faint around it
 MARK_REACH = 32.0  # px from its edge, two blocks of the codec
+OUTLINE_SMOOTHING = 0.6  # px
+EDGE_LEVELS = (0.15, 0.85)  # coverage between which the edge is measured
 BORDER = 2  # px; an object nearer to the edge of the picture is cut
 ANGLES = np.deg2rad(np.arange(0, 180, 5))
 
@@ -129,14 +132,17 @@ def _measure(window: Window, smooth: Image, mask: Mask, others: Mask) -> Silhoue
     return _shape(window, coverage.astype(np.float32), half, area, sign * plateau * float(scene[half > 0].mean()))
 
 
-def _shape(window: Window, coverage: Image, half: Mask, area: float, contrast: float) -> Silhouette:
+def _shape(window: Window, coverage: Image, half: Mask, area: float, contrast: float) -> Silhouette | None:
     rows, columns = np.arange(coverage.shape[0], dtype=np.float64), np.arange(coverage.shape[1], dtype=np.float64)
     along, across = coverage.sum(axis=1, dtype=np.float64), coverage.sum(axis=0, dtype=np.float64)
     y, x = float(rows @ along / area), float(columns @ across / area)
     xx, yy = float(across @ (columns - x) ** 2), float(along @ (rows - y) ** 2)
     xy = float((rows - y) @ coverage.astype(np.float64) @ (columns - x))
-    perimeter, edge_width = _edge(coverage)
-    smallest, largest = _feret(half)
+    outline, perimeter = _outline(coverage)
+    if perimeter <= 0:
+        return None
+    smallest, largest = _feret(outline)
+    rising = np.count_nonzero((coverage > EDGE_LEVELS[0]) & (coverage < EDGE_LEVELS[1]))
     touched_rows, touched_columns = np.flatnonzero(half.any(axis=1)), np.flatnonzero(half.any(axis=0))
     left, top = window.left + touched_columns[0], window.top + touched_rows[0]
     right, bottom = window.left + touched_columns[-1], window.top + touched_rows[-1]
@@ -146,9 +152,9 @@ def _shape(window: Window, coverage: Image, half: Mask, area: float, contrast: f
         y=window.top + y,
         area=area,
         aspect_ratio=smallest / largest,
-        circularity=min(1.0, float(np.sqrt(4 * np.pi * area)) / perimeter) if perimeter > 0 else float("nan"),
+        circularity=min(1.0, float(np.sqrt(4 * np.pi * area)) / perimeter),
         orientation=0.5 * float(np.arctan2(2 * xy, yy - xx)),
-        edge_width=edge_width,
+        edge_width=rising / (EDGE_LEVELS[1] - EDGE_LEVELS[0]) / perimeter,
         contrast=contrast,
         cut=bool(left <= BORDER or top <= BORDER or right >= width - 1 - BORDER or bottom >= height - 1 - BORDER),
     )
@@ -169,31 +175,34 @@ def _plateau(change: Image, mask: Mask) -> float:
     return float(np.median(inside)) if len(inside) >= 5 and np.median(inside) > peak / 2 else peak
 
 
-def _edge(coverage: Image) -> tuple[float, float]:
-    """Perimeter and width of the edge, px.
+def _outline(coverage: Image) -> tuple[FloatArray, float]:
+    """Points where the outline at half coverage crosses the lines between pixel centres, and its length, px.
 
-    The coverage rises from 0 to 1 across the edge, so its gradient summed over the plane is the perimeter (co-area
-    formula), whatever the blur; the area of the rising part over the perimeter is its width.
+    Each square of four pixel centres holds a straight piece between the points on its sides, or two of them.
     """
-    smooth = cv2.GaussianBlur(coverage, (0, 0), 1.0)
-    slope = np.hypot(
-        cv2.Sobel(smooth, cv2.CV_32F, 1, 0, ksize=3, scale=0.125),
-        cv2.Sobel(smooth, cv2.CV_32F, 0, 1, ksize=3, scale=0.125),
-    )
-    edge = cv2.dilate(((smooth > 0.1) & (smooth < 0.9)).astype(np.uint8), _disc(1)) > 0
-    perimeter = float(slope[edge].sum())
-    rising = float(np.count_nonzero((coverage > 0.1) & (coverage < 0.9)))
-    return perimeter, rising / perimeter / 0.8 if perimeter > 0 else 0.0
+    level = cv2.GaussianBlur(coverage, (0, 0), OUTLINE_SMOOTHING).astype(np.float64) - 0.5
+    inside = level > 0
+    on_rows, on_columns = inside[:, 1:] != inside[:, :-1], inside[1:] != inside[:-1]
+    with np.errstate(divide="ignore", invalid="ignore"):
+        right = level[:, :-1] / (level[:, :-1] - level[:, 1:])  # way from a centre to its right neighbour
+        down = level[:-1] / (level[:-1] - level[1:])
+    ys, xs = np.nonzero(on_rows)
+    yc, xc = np.nonzero(on_columns)
+    points = np.concatenate(
+        [np.stack([xs + right[ys, xs], ys], axis=1), np.stack([xc, yc + down[yc, xc]], axis=1)]
+    ).astype(np.float64)
+    crossed = np.stack([on_rows[:-1], on_columns[:, :-1], on_rows[1:], on_columns[:, 1:]], axis=-1)
+    sides_x = np.stack([right[:-1], np.zeros_like(down[:, 1:]), right[1:], np.ones_like(down[:, 1:])], axis=-1)
+    sides_y = np.stack([np.zeros_like(right[1:]), down[:, :-1], np.ones_like(right[1:]), down[:, 1:]], axis=-1)
+    pieces_x, pieces_y = sides_x[crossed].reshape(-1, 2), sides_y[crossed].reshape(-1, 2)
+    length = np.hypot(pieces_x[:, 1] - pieces_x[:, 0], pieces_y[:, 1] - pieces_y[:, 0]).sum()
+    return points, float(length)
 
 
-def _feret(half: Mask) -> tuple[float, float]:
-    """Smallest and largest distance of two parallel tangents, px, of the half-level silhouette."""
-    contours, _ = cv2.findContours(half, cv2.RETR_EXTERNAL, cv2.CHAIN_APPROX_SIMPLE)
-    points = np.concatenate([contour.reshape(-1, 2) for contour in contours]).astype(np.float64)
-    hull = cv2.convexHull(points.astype(np.float32)).reshape(-1, 2)
-    along = hull @ np.stack([np.cos(ANGLES), np.sin(ANGLES)]).astype(np.float32)
-    # the outline passes through pixel centres: half a pixel is missing on either side
-    widths = along.max(axis=0) - along.min(axis=0) + 1.0
+def _feret(outline: FloatArray) -> tuple[float, float]:
+    """Smallest and largest distance of two parallel tangents, px."""
+    along = outline @ np.stack([np.cos(ANGLES), np.sin(ANGLES)])
+    widths = np.ptp(along, axis=0)
     return float(widths.min()), float(widths.max())
 
 

@@ -22,7 +22,11 @@ Picture = NDArray[Any]  # (height, width), uint8 or float32 with the range of ui
 PICTURE_SUFFIXES = frozenset({".png", ".tif", ".tiff"})
 LUMA_8_BIT = frozenset({"I420", "Y800"})  # undecoded luma of any other format is a wrong picture without a word
 LIMITED_RANGE_BLACK = 16.0  # ITU-R BT.601 and BT.709: luma 16..235
+SILENT = 0  # OpenCV's LOG_LEVEL_SILENT
 TRUNCATED_SHARE = 0.98  # of the frames that the header promises
+
+# FFmpeg's own messages off; read once, when the first video is opened, so it is set before
+os.environ.setdefault("OPENCV_FFMPEG_LOGLEVEL", "-8")
 
 
 class Frame(NamedTuple):
@@ -157,9 +161,9 @@ def _open_file(path: Path) -> VideoFile:
 @contextmanager
 def _capture(path: Path, *, undecoded_luma: bool = False) -> Iterator[cv2.VideoCapture]:
     """A capture that is closed afterwards, with the library's own messages off."""
-    os.environ.setdefault("OPENCV_FFMPEG_LOGLEVEL", "-8")
-    before = cv2.getLogLevel() if hasattr(cv2, "getLogLevel") else cv2.utils.logging.getLogLevel()
-    _set_log_level(0)
+    log: Any = getattr(cv2.utils, "logging", cv2)  # OpenCV 4 has the two functions one level up
+    before = log.getLogLevel()
+    log.setLogLevel(SILENT)
     capture = cv2.VideoCapture(str(path), cv2.CAP_FFMPEG)
     try:
         # set after opening: as open parameters they make opening fail
@@ -169,14 +173,7 @@ def _capture(path: Path, *, undecoded_luma: bool = False) -> Iterator[cv2.VideoC
         yield capture
     finally:
         capture.release()
-        _set_log_level(before)
-
-
-def _set_log_level(level: int) -> None:
-    if hasattr(cv2, "setLogLevel"):
-        cv2.setLogLevel(level)
-    else:
-        cv2.utils.logging.setLogLevel(level)
+        log.setLogLevel(before)
 
 
 def _four_letters(code: float) -> str:
