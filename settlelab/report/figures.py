@@ -41,7 +41,10 @@ class DragCurve:
 
 
 def drag_chart(drops: pd.DataFrame, curves: Sequence[DragCurve], *, ax: Axes | None = None) -> Axes:
-    """Drag coefficient over Reynolds number of each accepted drop, control spheres hollow, with drag laws."""
+    """Drag coefficient over Reynolds number of each accepted drop, control spheres hollow, with drag laws.
+
+    Drops in a fluid that is not Newtonian are filled by half: there a law holds at Re/X, left of the drop.
+    """
     ax = drawing.axes(ax, 7.0, 4.8)
     used = drops[drops["accepted"].astype(bool)]
     cuttings, controls = used[~used["control"].astype(bool)], used[used["control"].astype(bool)]
@@ -75,19 +78,24 @@ def _plain_decades(axis: Axis) -> None:
 
 
 def _drops(ax: Axes, drops: pd.DataFrame, label: str, marker: str, colours: dict[str, Any]) -> None:
-    ax.errorbar(
-        drops["reynolds"],
-        drops["drag_coefficient"],
-        xerr=2 * drops["reynolds_u"],
-        yerr=2 * drops["drag_coefficient_u"],
-        fmt=marker,
-        label=label,
-        markersize=6,
-        mew=0.7,
-        elinewidth=0.9,
-        zorder=3,
-        **colours,
-    )
+    """Drops with their bars; those in a fluid that is not Newtonian are filled by half."""
+    newtonian = (drops["flow_index"] == 1.0) & (drops["yield_stress"] == 0.0)
+    for some, filling in ((drops[newtonian], "full"), (drops[~newtonian], "left")):
+        ax.errorbar(
+            some["reynolds"],
+            some["drag_coefficient"],
+            xerr=2 * some["reynolds_u"],
+            yerr=2 * some["drag_coefficient_u"],
+            fmt=marker,
+            fillstyle=filling,
+            markerfacecoloralt="white",
+            markersize=6,
+            mew=0.7,
+            elinewidth=0.9,
+            zorder=3,
+            **colours,
+        )
+    ax.plot([], [], marker, label=label, markersize=6, mew=0.7, **colours)
 
 
 def measured_against_predicted(pairs: pd.DataFrame, *, title: str = "", ax: Axes | None = None) -> Axes:

@@ -32,8 +32,8 @@ LAB_NOTE = (
     "U is the expanded uncertainty (k = 2, about 95 %) of the mean: the repeatability of drops, pooled over all"
     " particles, and what the drops share (scale, clock, fluid, walls, size). The mean of a lot is that of these very"
     " particles; scatter is the relative standard deviation of the drops of a particle, or of the particles of a lot."
-    " Predictions are for unbounded fluid and compare with the unbounded velocity; those of a calibrated form are on drops"
-    " that it was fitted to."
+    " Predictions are for unbounded fluid and compare with the unbounded velocity; those of a calibrated form are on"
+    " drops that it was fitted to."
 )
 CAUTIONS = (
     "A fall through still fluid in a column is not a design for hole cleaning: in a well the fluid moves and shears,"

@@ -31,9 +31,16 @@ def test_drag_chart_shows_accepted_drops_by_lot_controls_and_curves() -> None:
     assert (ax.get_xscale(), ax.get_yscale()) == ("log", "log")
     laws = [calibration.best_published, "velocity-power of sphericity"]
     shape = ", at each lot's median shape"
-    assert labels(ax) == ["sphere", *(law + shape for law in laws), "A", "B", "C", "control spheres"]
+    assert labels(ax) == ["A", "B", "C", "control spheres", "sphere", *(law + shape for law in laws)]
     points = sum(len(container.lines[0].get_xdata()) for container in ax.containers)
     assert points == 25  # the refused one is not drawn
+
+
+def test_drops_in_a_polymer_are_told_apart() -> None:
+    drops = measured_of([drop(1, lot="A"), drop(2, lot="A", flow_index=0.6), drop(3, lot="A", yield_stress=0.2)]).drops
+    ax = figures.drag_chart(drops, [])
+    filled = {container.lines[0].get_fillstyle(): len(container.lines[0].get_xdata()) for container in ax.containers}
+    assert filled == {"full": 1, "left": 2}
 
 
 def test_sphere_curve_is_the_standard_one() -> None:

@@ -76,7 +76,7 @@ def test_lot_is_the_mean_of_its_particles_with_their_scatter() -> None:
     assert (lot["lot"], lot["particles"], lot["drops"], lot["accepted"]) == ("A", 3, 4, 4)
     assert lot["velocity"] == pytest.approx(0.11)
     assert lot["velocity_scatter"] == pytest.approx(0.01 / 0.11)
-    # peculiar to each of the three: track and size, 0.001 * 0.8 (the scatter of A-01 is nil); shared: scale, 0.001 * 0.6;
+    # peculiar to each of the three: track and size, 0.001 * 0.8 (the scatter of A-01 is nil); shared: 0.001 * 0.6;
     # A-01's own part is a little smaller: its fit averages over two drops, 0.001 * (0.2 / 2 + 0.44)^0.5 = 0.000735
     own = math.sqrt(0.000735**2 + 2 * 0.0008**2) / 3
     assert lot["velocity_expanded_u"] == pytest.approx(2 * math.hypot(own, 0.0006), rel=1e-3)
