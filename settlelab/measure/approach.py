@@ -82,7 +82,7 @@ def find_approach(time: FloatArray, distance: FloatArray, swing: FloatArray) -> 
     fit = regress(blocks(line), blocks(distance[:, None] - distance[0])[:, 0])
     tried = np.geomspace(_SHORTEST, _LONGEST, _TRIED)
     trial = _try(fit, scaled, blocks(line), tried)
-    if _log_odds(fit, trial) < _LOG_ODDS:
+    if not _log_odds(fit, trial) > _LOG_ODDS:
         return None
     for _ in range(_ROUNDS):
         trial = _try(fit, scaled, blocks(line), _closer(trial))
@@ -109,8 +109,9 @@ def _try(fit: Regression, scaled: FloatArray, line: FloatArray, time_constant: F
     rss = np.maximum(fit.rss[:, None] - amount**2 * square, 1e-12 * fit.rss[:, None])
     tilt = np.einsum("hp,hpk->hk", fit.inverse[:, 1], along)  # slope of the decay's straight part
     terminal = fit.coefficients[:, 1, None] - amount * tilt
-    deficit = amount / size / time_constant / terminal
-    possible = (terminal > 0) & (1 - deficit > _SLOWEST) & (1 - deficit < _FASTEST)
+    falling = terminal > 0
+    deficit = amount / size / time_constant / np.where(falling, terminal, 1.0)
+    possible = falling & (1 - deficit > _SLOWEST) & (1 - deficit < _FASTEST)
     log_likelihood = fit.log_without_rss[:, None] - 0.5 * np.log(square) - (fit.degrees - 1) / 2 * np.log(rss)
     return _Trial(
         time_constant=time_constant,

@@ -27,6 +27,8 @@ __all__ = ["FluidState", "flow_curve", "fluid_state"]
 # what the effects change: kg/m3, ln(Pa s^n), 1, Pa
 PROPERTIES = ("fluid_density", "log_consistency", "flow_index", "yield_stress")
 
+DOUBTFUL_CHI_SQUARE = 4.0  # reduced, from which readings and flow curve are said to disagree
+
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class FluidState:
@@ -197,13 +199,14 @@ def _fitted(fluid: Fluid, readings: ViscometerReadings) -> tuple[Rheology, list[
     axes = np.sqrt(np.maximum(values, 0.0) * birge) * vectors  # columns: independent directions
     names = ["log_consistency" if name == "consistency" else name for name in fit.names]
     effects = [Effect("viscosity", dict(zip(names, axis.tolist(), strict=True))) for axis in axes.T]
-    chosen = f"; {fit.model} fits them best" if fluid.rheology == "best" else ""
-    slack = "" if birge == 1.0 else f" Their scatter is {np.sqrt(birge):.2g} times what their uncertainty allows."
+    curve = f'fluid "{fluid.name}": viscometer readings scatter about the {fit.model} curve by {birge**0.5:.2g} times'
     told = _Property(
         value=float(consistency),
         effects={},
-        assumed=f'fluid "{fluid.name}": flow curve from {readings.file.name}{chosen}' if chosen else "",
-        doubt=f'fluid "{fluid.name}": viscometer readings and flow curve disagree.{slack}' if birge > 4.0 else "",
+        assumed=f'fluid "{fluid.name}": flow curve from {readings.file.name}; {fit.model} fits it best'
+        if fluid.rheology == "best"
+        else "",
+        doubt=f"{curve} their uncertainty" if birge > DOUBTFUL_CHI_SQUARE else "",
     )
     return fit.rheology, effects, told
 

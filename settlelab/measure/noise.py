@@ -99,7 +99,7 @@ def regress(design: FloatArray, y: FloatArray) -> Regression:
     basis, triangle = np.linalg.qr(models.whitening @ design)
     response = models.whitening @ y
     rss = np.sum(response**2, axis=1) - np.sum(np.einsum("hnp,hn->hp", basis, response) ** 2, axis=1)
-    rss = np.maximum(rss, 1e-24 * np.sum(response**2, axis=1))  # exact lines: rounding only
+    rss = np.maximum(rss, 1e-24 * np.sum(response**2, axis=1) + 1e-300)  # of an exact line only rounding is left
     diagonal = np.abs(np.diagonal(triangle, axis1=1, axis2=2))
     degrees = len(y) - design.shape[1]
     return Regression(

@@ -20,6 +20,7 @@ __all__ = ["terminal_velocity"]
 
 FEWEST = 8  # points that a velocity is taken from
 STEADY = 0.005  # share of the terminal velocity that may be missing where the steady window begins; corrected for
+LAST_STAGE = 0.3  # share that may be missing where the approach is taken as exponential
 WORTH_CUTTING = 0.3  # share of the points that a steady window must keep; else the approach is extrapolated
 ARRIVED = 0.98  # share of the terminal velocity below which the fall is still accelerating
 OUTLYING = 5.0  # robust standard deviations from the curve of the fall
@@ -27,7 +28,7 @@ FEWEST_SWINGS = 2.0  # periods in the window
 SWING_SHARE = 0.6  # of the variance of the residuals
 SWING_SPEED = 0.02  # amplitude of the velocity of a swing over the terminal velocity, from which it is flagged
 
-_ROUNDS = 4  # an approach is seldom quite exponential: what is left of it is looked for again
+_ROUNDS = 6  # an approach is seldom quite exponential: what is left of it is looked for again
 
 
 @dataclass(frozen=True, slots=True)
@@ -43,9 +44,10 @@ def terminal_velocity(time: ArrayLike, distance: ArrayLike) -> Velocity:
 
     - Points further than 5 robust standard deviations from the curve of the fall are set aside.
     - An approach V = Vt - D exp(-t/tau) is looked for; it counts where it is 20 times likelier than a straight line.
-    - The window begins where less than 0.5 % of the terminal velocity is missing; the rest is corrected for, and half
-      the correction enters the uncertainty. Where so late a start would leave less than 30 % of the points, the end of
-      the approach is extrapolated with the uncertainty of that.
+    - The window begins where less than 0.5 % of the terminal velocity is missing; the rest is corrected for, and the
+      correction enters the uncertainty too: an approach is not quite exponential. Where so late a start would leave
+      less than 30 % of the points, the end of the approach is extrapolated; what is missing at the last point then
+      enters the uncertainty.
     - `accelerating`: at the last point more than 2 % of the terminal velocity is missing (or is too much).
     - `wobbling`: a swing with two periods or more explains 60 % of the variance about the line, and its velocity
       reaches 2 % of the terminal one. Such a swing is fitted along with the line.
@@ -77,11 +79,12 @@ def terminal_velocity(time: ArrayLike, distance: ArrayLike) -> Velocity:
     fraction = 1.0 if approach is None else 1 - abs(float(approach.missing(t[-1])))
     flags: tuple[str, ...] = ("accelerating",) if fraction < ARRIVED else ()
     if approach is not None and not steady:
-        value, u = approach.terminal, approach.u
+        value = approach.terminal
+        u = math.hypot(approach.u, value * (1 - fraction))
     else:
         t, y = t[first:], y[first:]
         value, u, swing = _straight(t, y if approach is None else approach.straightened(t, y))
-        u = math.hypot(u, 0.0 if approach is None else value * _mean_missing(approach, t) / 2)
+        u = math.hypot(u, 0.0 if approach is None else value * _mean_missing(approach, t))
         flags += ("wobbling",) if swing > SWING_SPEED * value else ()
     return Velocity(
         value=sign * value,
@@ -114,23 +117,29 @@ def _inlying(time: FloatArray, distance: FloatArray) -> NDArray[np.bool_]:
 
 def _steady_window(time: FloatArray, distance: FloatArray) -> tuple[int, Approach | None, bool]:
     """Index at which the steady window begins, the last approach that was found, and whether the window is steady."""
-    first, found = 0, None
+    first: int = 0
+    found: Approach | None = None
     for _ in range(_ROUNDS):
         t, y = time[first:], distance[first:]
-        straight = y if found is None else found.straightened(t, y)
-        approach = find_approach(t, straight, np.empty((len(t), 0)))
-        if approach is None:
+        found = _approach_beyond(found, t, y)
+        missing = 0.0 if found is None else abs(float(found.missing(t[0])))
+        if found is None or missing <= STEADY:
             break
-        if found is not None:  # the first one fell short: both together are described anew
-            approach = find_approach(t, y, np.empty((len(t), 0))) or approach
-        found = approach
-        start = int(np.searchsorted(time, approach.steady_from(STEADY)))
+        start = int(np.searchsorted(time, found.steady_from(STEADY if missing <= LAST_STAGE else LAST_STAGE)))
         if len(time) - start < max(FEWEST, WORTH_CUTTING * len(t)):
             return first, found, False
-        if start <= first:
-            break
         first = start
     return first, found, True
+
+
+def _approach_beyond(found: Approach | None, time: FloatArray, distance: FloatArray) -> Approach | None:
+    """The approach in a window: the one found before, or a new one where that leaves another unexplained."""
+    none = np.empty((len(time), 0))
+    if found is None:
+        return find_approach(time, distance, none)
+    if find_approach(time, found.straightened(time, distance), none) is None:
+        return found
+    return find_approach(time, distance, none) or found
 
 
 def _mean_missing(approach: Approach, time: FloatArray) -> float:
@@ -154,24 +163,30 @@ def _straight(time: FloatArray, distance: FloatArray) -> tuple[float, float, flo
 def _find_swing(s: FloatArray, distance: FloatArray) -> _Swing | None:
     """The sine about a straight line that explains most, if that is enough to be one; `s` runs from 0 to 1."""
     y = blocks(distance[:, None])[:, 0]
-    count = len(y)
-    cycles = np.arange(FEWEST_SWINGS, count / 4, 0.25)
-    if cycles.size == 0:
+    coarse = np.arange(FEWEST_SWINGS, len(y) / 4, 0.25)
+    if coarse.size == 0:
         return None
-    angle = 2 * np.pi * s[:, None] * cycles
-    waves = np.stack([blocks(np.cos(angle)), blocks(np.sin(angle))], axis=-1)  # (n, M, 2)
-    line = blocks(np.column_stack([np.ones_like(s), s]))
-    line, _ = np.linalg.qr(line)
-    residual = y - line @ (line.T @ y)
-    waves = np.moveaxis(waves - np.einsum("np,pmq->nmq", line, np.einsum("np,nmq->pmq", line, waves)), 1, 0)
-    basis, triangle = np.linalg.qr(waves)
-    part = np.einsum("mnq,n->mq", basis, residual)
-    total = float(residual @ residual)
-    explained = np.sum(part**2, axis=1) / max(total, 1e-300)
+    near = coarse[int(np.argmax(_explained(s, y, coarse)[0]))]
+    cycles = near + np.linspace(-0.25, 0.25, 21)
+    explained, amplitude = _explained(s, y, cycles)
     best = int(np.argmax(explained))
-    by_chance = cycles.size * (1 - explained[best]) ** ((count - 4) / 2)
+    by_chance = coarse.size * (1 - explained[best]) ** ((len(y) - 4) / 2)
     if explained[best] < SWING_SHARE or by_chance > 0.01:
         return None
-    amplitude = float(np.linalg.norm(np.linalg.solve(triangle[best], part[best])))
-    columns = np.column_stack([np.cos(angle[:, best]), np.sin(angle[:, best])])
-    return _Swing(columns=columns, speed=2 * np.pi * float(cycles[best]) * amplitude)
+    angle = 2 * np.pi * cycles[best] * s
+    speed = 2 * np.pi * float(cycles[best] * amplitude[best])
+    return _Swing(columns=np.column_stack([np.cos(angle), np.sin(angle)]), speed=speed)
+
+
+def _explained(s: FloatArray, y: FloatArray, cycles: FloatArray) -> tuple[FloatArray, FloatArray]:
+    """Share of the variance about a line that a sine of so many cycles explains, and its amplitude."""
+    angle = 2 * np.pi * s[:, None] * cycles
+    waves = np.stack([blocks(np.cos(angle)), blocks(np.sin(angle))], axis=-1)  # (n, M, 2)
+    line, _ = np.linalg.qr(blocks(np.column_stack([np.ones_like(s), s])))
+    residual = y - line @ (line.T @ y)
+    across = waves - np.einsum("np,pmq->nmq", line, np.einsum("np,nmq->pmq", line, waves))
+    basis, triangle = np.linalg.qr(np.moveaxis(across, 1, 0))
+    part = np.einsum("mnq,n->mq", basis, residual)
+    explained = np.sum(part**2, axis=1) / max(float(residual @ residual), 1e-300)
+    amplitude = np.linalg.norm(np.linalg.solve(triangle, part[..., None])[..., 0], axis=1)
+    return explained, np.asarray(amplitude)
