@@ -18,8 +18,8 @@ from settlelab.simulate.lots import ROCKS, cuttings
 from settlelab.simulate.scene import Camera, Column, Lamp, Nuisances, Particle, Scene
 from settlelab.simulate.schedule import Manner, with_drops
 
-FRAME_RATES = (30.0, 50.0, 60.0, 90.0, 120.0, 240.0)  # Hz
-FRAMES_PER_FALL = 60  # aimed at for the fastest particle of a recording
+FRAME_RATES = (30.0, 40.0, 50.0, 60.0, 75.0, 90.0, 120.0, 150.0, 200.0, 240.0)  # Hz
+FRAMES_PER_FALL = 50  # aimed at for the fastest particle of a recording
 
 
 def random_study(
@@ -121,7 +121,7 @@ def _with_camera(scene: Scene, dropped: Sequence[Particle], rng: np.random.Gener
         height=height,
         metre_per_px=scale,
         frame_rate=rate,
-        container_rate=30.0 if rate == 240.0 else None,
+        container_rate=30.0 if rate >= 200.0 else None,
         exposure=float(min(2e-3, round(1.5 * scale / fastest, 5))),
         softness=float(rng.uniform(0.5, 1.0)),
         gravity=str(rng.choice(["down", "up", "left", "right"])),  # type: ignore[arg-type]  # one of the four

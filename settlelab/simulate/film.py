@@ -92,15 +92,20 @@ def recording(scene: Scene, path: Path, seed: int) -> pd.DataFrame:
     camera = scene.camera
     across, along = camera.width, camera.height
     size = (across, along) if camera.gravity in ("down", "up") else (along, across)
-    write_video(path, pictures(scene, seed), size=size, rate=camera.container_rate or camera.frame_rate)
-    return truth(scene)
+    falls = trajectories(scene)
+    rate = camera.container_rate or camera.frame_rate
+    write_video(path, _frames(scene, falls, seed), size=size, rate=rate)
+    return _truth(scene, falls)
 
 
 def pictures(scene: Scene, seed: int) -> Iterator[NDArray[np.uint8]]:
     """The frames of a scene as recorded, grey, turned as the camera was."""
+    return _frames(scene, trajectories(scene), seed)
+
+
+def _frames(scene: Scene, falls: list[Trajectory], seed: int) -> Iterator[NDArray[np.uint8]]:
     rng = np.random.default_rng(seed)
     behind = backdrop(scene, rng)
-    falls = trajectories(scene)
     for time in scene.times:
         light = clean_picture(behind, falls, float(time))
         yield turned(_grey(light, scene.camera, rng), scene.camera.gravity)
@@ -140,7 +145,11 @@ def _grey(light: FloatArray, camera: Camera, rng: np.random.Generator) -> NDArra
 
 def truth(scene: Scene) -> pd.DataFrame:
     """The truth table of a scene: one row per drop, the columns of `DropTruth` in SI."""
-    rows = [_row(scene, number, fall) for number, fall in enumerate(trajectories(scene), start=1)]
+    return _truth(scene, trajectories(scene))
+
+
+def _truth(scene: Scene, falls: list[Trajectory]) -> pd.DataFrame:
+    rows = [_row(scene, number, fall) for number, fall in enumerate(falls, start=1)]
     return pd.DataFrame(rows, columns=list(DropTruth.__annotations__))
 
 
