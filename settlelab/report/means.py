@@ -60,9 +60,10 @@ def with_parts(drops: pd.DataFrame, budget: pd.DataFrame) -> pd.DataFrame:
     for quantity in QUANTITIES:
         rows = budget[budget["output"] == quantity]
         fall, particle = (
-            parts["drop"].map(rows[rows["input"].isin(sources)].groupby("drop")["share"].sum()).fillna(0.0).clip(0, 1)
+            parts["drop"].map(rows[rows["input"].isin(sources)].groupby("drop")["share"].sum())
             for sources in (OF_ONE_FALL, OF_ONE_PARTICLE)
         )
+        fall, particle = (share.astype(np.float64).fillna(0.0).clip(0, 1) for share in (fall, particle))
         u = parts[f"{quantity}_u"]
         parts[f"{quantity}_fall_u"] = u * np.sqrt(fall)
         parts[f"{quantity}_particle_u"] = u * np.sqrt(particle)

@@ -166,7 +166,8 @@ def budget_shares(measured: Measured) -> pd.DataFrame:
     rows = measured.budget[measured.budget["drop"].isin(accepted)]
     totals = rows.groupby(["output", "input"])["share"].sum().unstack("input")
     counted = rows.groupby("output")["drop"].nunique()
-    shares = totals.div(counted, axis="index").reindex(list(OUTPUTS)).dropna(how="all").fillna(0.0)
+    shares = totals.div(counted, axis="index").reindex(list(OUTPUTS)).dropna(how="all")
+    shares = shares.astype(np.float64).fillna(0.0)
     largest = shares.max().sort_values(ascending=False, kind="stable").index
     return shares[largest].rename(index=OUTPUTS).rename_axis(index=None, columns=None)
 
