@@ -52,6 +52,7 @@ ABOVE_ZERO = click.FloatRange(min=0, min_open=True)
 @click.option("--suffix", type=click.Choice([".mp4", ".avi", ".mkv"]), default=".mp4", show_default=True)
 @click.option("--seed", type=click.IntRange(0), default=1, show_default=True)
 def command(
+    *,
     folder: Path,
     field_study: bool,
     particle: Literal["grain", "sphere"],
