@@ -9,6 +9,7 @@ import numpy as np
 import pandas as pd
 from numpy.typing import NDArray
 
+from settlelab.calibrate.attenuation import attenuation_notes, expected_inputs
 from settlelab.calibrate.carding import Origin, make_card
 from settlelab.calibrate.choice import choose
 from settlelab.calibrate.falls import published_law
@@ -76,7 +77,8 @@ def calibrate_drops(
     methods, left_out = usable_methods(known)
     published = [published_contender(method, seen) for method in methods]
     best = min(published, key=lambda contender: float(np.mean(by_particle(seen, squared_error(contender)))))
-    means = particle_means(seen)
+    averaged = particle_means(seen)
+    means = expected_inputs(averaged)
     fitted, failed = _fit_all(_forms(choice, seen, best.name), seen, means)
     general = [(item.contender, len(item.form.parameters)) for item in fitted if _for_any_lot(item.form, choice)]
     verdict = choose(best, general, seen)
@@ -94,7 +96,7 @@ def calibrate_drops(
         chosen=chosen,
         card=make_card(chosen, DRAG[best.name], state, ranking, seen, origin or Origin()),
         left_out={**left_out, **failed},
-        notes=(verdict.sentence, *_notes(ranking, best, chosen, state, means), *aside),
+        notes=(verdict.sentence, *_notes(ranking, best, chosen, state, means), *attenuation_notes(averaged), *aside),
     )
 
 

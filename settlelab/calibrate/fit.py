@@ -140,8 +140,8 @@ def fit_form(form: Form, seen: Observations) -> LawFit:
     ends = np.array([(parameter.low, parameter.high) for parameter in form.parameters])
     at_bound = solution.at_bound | (values - u <= ends[:, 0]) | (values + u >= ends[:, 1])
     covariance = np.full((len(values), len(values)), np.nan)
-    free = np.flatnonzero(~at_bound)
-    covariance[np.ix_(free, free)] = _parameter_covariance(state.jacobian[:, free], state.weights)
+    if len(free := np.flatnonzero(~at_bound)):
+        covariance[np.ix_(free, free)] = _parameter_covariance(state.jacobian[:, free], state.weights)
     return replace(state, values=values, covariance=covariance, at_bound=at_bound)
 
 

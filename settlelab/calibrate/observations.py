@@ -204,12 +204,12 @@ def _as_arrays(used: pd.DataFrame, descriptors: Collection[str]) -> Observations
         yield_stress=np.nan_to_num(column("yield_stress")),
         descriptors=shapes,
     )
-    velocity = column("unbounded_velocity")
+    velocity, fluids = column("unbounded_velocity"), _fluids(used, falls)
     return Observations(
         drop=used["drop"].to_numpy(dtype=np.int64),
         particle=_particles(used),
-        fluid=_fluids(used, falls),
-        fluid_name=used["fluid"].to_numpy(dtype=np.str_),
+        fluid=fluids,
+        fluid_name=np.array([name or f"fluid {n + 1}" for name, n in zip(used["fluid"], fluids, strict=True)]),
         lot=used["lot"].to_numpy(dtype=np.str_),
         velocity=velocity,
         velocity_u=relative("unbounded_velocity_u", "unbounded_velocity"),

@@ -141,8 +141,10 @@ def _refuse_nonsense(falls: Falls) -> None:
     for name, values in falls.descriptors.items():
         if name in ("lot", "density_ratio"):
             continue
-        if not np.all((values > 0) & np.isfinite(values)) or (name == "sphericity" and np.any(values > 1)):
-            raise SettlelabError(f"a {name.replace('_', ' ')} is above 0 and at most 1")
+        if not np.all((values > 0) & np.isfinite(values)):
+            raise SettlelabError(f"the {name.replace('_', ' ')} must be above 0")
+        if name == "sphericity" and np.any(values > 1):
+            raise SettlelabError("the sphericity must be at most 1")
 
 
 def _law_uncertainty(card: Card, falls: Falls) -> FloatArray:
