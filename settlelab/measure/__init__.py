@@ -6,7 +6,7 @@ what is expected of them, and sentences on what was assumed and what is doubtful
 
 from __future__ import annotations
 
-from settlelab.measure.controls import e_n
+from settlelab.measure.controls import chain_verdict, e_n
 from settlelab.measure.drops import measure_study
 from settlelab.measure.falls import measure_falls, track_table
 from settlelab.measure.fluids import FluidState, fluid_state
@@ -19,6 +19,7 @@ __all__ = [
     "Measured",
     "TrackPoint",
     "Velocity",
+    "chain_verdict",
     "e_n",
     "fluid_state",
     "measure_falls",

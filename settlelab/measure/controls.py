@@ -17,7 +17,7 @@ from settlelab.measure.propagation import Effect, Estimate, propagate
 from settlelab.physics.drag import DRAG, terminal_velocity
 from settlelab.physics.walls import wall_factor
 
-__all__ = ["CONTROL_COLUMNS", "Comparison", "compare_control", "e_n", "expected_velocity", "told"]
+__all__ = ["CONTROL_COLUMNS", "Comparison", "chain_verdict", "compare_control", "e_n", "expected_velocity"]
 
 LAW = "cheng-2009"
 # Relative standard uncertainty of its drag coefficient: the good laws for spheres spread by 5 % (k = 2) from Re 0.01 to
@@ -119,7 +119,7 @@ def compare_control(sphere: Grain, setup: Setup, result: Fallen) -> Comparison:
     return Comparison(expected=expected_velocity(sphere, setup), measured=result.velocity)
 
 
-def told(controls: pd.DataFrame) -> str:
+def chain_verdict(controls: pd.DataFrame) -> str:
     """What the control drops say about the chain, in a sentence.
 
     Parameters
@@ -129,16 +129,23 @@ def told(controls: pd.DataFrame) -> str:
     """
     if controls.empty:
         return "no control sphere was measured: scale, clock, fluid and wall correction are not checked together"
-    count, passed = len(controls), int(controls["passed"].sum())
-    worst = float(controls["en"].abs().max())
-    if passed == count:
-        return f"all {count} control drops agree with the expected velocity (largest |E_n| {worst:.2f}): under control"
+    count, failed = len(controls), int((~controls["passed"]).sum())
+    worst = f"|E_n| {controls['en'].abs().max():.2f}"
+    if failed == 0 and count == 1:
+        return f"the one control drop agrees with the expected velocity ({worst})"
+    if failed == 0:
+        return f"all {count} control drops agree with the expected velocities (largest {worst})"
+    verb = "does" if failed == 1 else "do"
+    told = f"{failed} of {count} control drops {verb} not agree with the expected velocity (largest {worst})"
     deviation = (controls["velocity"] / controls["expected_velocity"] - 1).to_numpy(dtype=np.float64)
-    failed = f"{count - passed} of {count} control drops miss the expected velocity (largest |E_n| {worst:.2f})"
     if np.all(deviation > 0) or np.all(deviation < 0):
-        way = "fast" if deviation[0] > 0 else "slow"
-        return (
-            f"{failed}; all are too {way}, by {100 * abs(deviation).mean():.1f} % on average: check scale, clock and "
-            "viscosity, which all drops share"
+        subject = f"it is too {_way(deviation)}" if count == 1 else f"all are too {_way(deviation)}"
+        mean = f"by {100 * abs(deviation).mean():.1f} %" + (" on average" if count > 1 else "")
+        return f"{told}; {subject}, {mean}: check scale, clock and viscosity" + (
+            ", which they share" if count > 1 else ""
         )
-    return f"{failed}, some too fast and some too slow: check the spheres themselves and their order of release"
+    return f"{told}, some too fast and some too slow: check the spheres themselves and their order of release"
+
+
+def _way(deviation: FloatArray) -> str:
+    return "fast" if deviation[0] > 0 else "slow"

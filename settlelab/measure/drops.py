@@ -11,7 +11,7 @@ import pandas as pd
 from settlelab.errors import SettlelabError
 from settlelab.measure.acceptance import finding
 from settlelab.measure.chain import Fallen, Setup, bore_of, fallen
-from settlelab.measure.controls import CONTROL_COLUMNS, compare_control, told
+from settlelab.measure.controls import CONTROL_COLUMNS, chain_verdict, compare_control
 from settlelab.measure.falls import View, drop_table, judged, row_of, view_of
 from settlelab.measure.fluids import FluidState, fluid_state
 from settlelab.measure.model import Drop, Measured
@@ -97,7 +97,7 @@ def measure_study(study: Study, recordings: Sequence[TrackedRecording]) -> Measu
             _add_drop(tables, _Fall(recording, tracked, track, setup), particle)
     controls = pd.DataFrame(tables.controls, columns=list(CONTROL_COLUMNS)).astype({"passed": bool})
     if not controls["passed"].all():
-        tables.doubts.append(told(controls))
+        tables.doubts.append(chain_verdict(controls))
     return Measured(
         drops=drop_table(tables.drops),
         budget=pd.DataFrame(tables.budget, columns=["drop", "output", "input", "share"]).astype({"share": float}),
@@ -134,7 +134,7 @@ def _particles(study: Study, recording: Recording, tracked: TrackedRecording) ->
 def _add_drop(tables: _Tables, fall: _Fall, particle: Particle | None) -> None:
     """Measure and judge one fall, and write it into the tables."""
     number = len(tables.drops) + 1
-    view = view_of(fall.track, fall.tracked, fall.setup.bore.diameter)
+    view = view_of(fall.track, fall.tracked)
     row = row_of(fall.track, fall.tracked, view)
     row |= {"drop": number, "recording": fall.recording.name, "fluid": fall.recording.fluid.name}
     if particle is None:

@@ -42,7 +42,7 @@ class View:
         return [*found, wall] if wall is not None else found
 
 
-def view_of(track: Track, tracked: TrackedRecording, bore: float = math.inf) -> View:
+def view_of(track: Track, tracked: TrackedRecording) -> View:
     """Velocity and silhouette of one fall.
 
     Parameters
@@ -51,21 +51,21 @@ def view_of(track: Track, tracked: TrackedRecording, bore: float = math.inf) -> 
         The fall.
     tracked : TrackedRecording
         The recording that it belongs to.
-    bore : float
-        Inner diameter of the column [m], for recordings in which no walls were found.
     """
     scale = tracked.scale.value
     velocity = terminal_velocity(track.time, track.y * scale)
     window = slice(velocity.first, velocity.last + 1)
-    radius = bore / 2 if tracked.walls is None else (tracked.walls[1] - tracked.walls[0]) / 2 * scale
-    wall_distance = _median(track.wall_distance[window]) * scale
+    wall_distance = _median(track.wall_distance[window])
+    off_axis = math.nan
+    if tracked.walls is not None:
+        off_axis = 1 - 2 * wall_distance / (tracked.walls[1] - tracked.walls[0])
     return View(
         velocity=velocity,
         projected_diameter=math.sqrt(4 * _median(track.area[window]) / math.pi) * scale,
         circularity=_median(track.circularity[window]),
         aspect_ratio=_median(track.aspect_ratio[window]),
-        off_axis=1 - wall_distance / radius if math.isfinite(radius) else math.nan,
-        wall_distance=wall_distance,
+        off_axis=off_axis,
+        wall_distance=wall_distance * scale,
     )
 
 
