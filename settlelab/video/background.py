@@ -8,7 +8,6 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
-from typing import Any
 
 import cv2
 import numpy as np
@@ -17,11 +16,14 @@ from numpy.typing import NDArray
 from settlelab.video.source import Frame, Picture
 
 Image = NDArray[np.float32]
+Mask = NDArray[np.uint8]
 
 SAMPLE_BYTES = 100_000_000  # of kept frames
 MOST_SAMPLES, FEWEST_SAMPLES = 49, 9
 DETECTION_PIXELS = 120_000  # of the small picture on which changes are looked for
 LARGEST_FACTOR = 4  # a particle of 3 px must still show in the small picture
+QUIET, QUIET_FLOOR = 3.5, 1.0  # times the noise of a block, or grey levels: nothing is there
+NOISE_SAMPLES = 12
 MAD_TO_SD = 1.4826  # normal distribution
 ROUNDING_NOISE = 0.3  # grey levels, of rounding to whole levels: 1/sqrt(12)
 DARKEST = 8.0  # grey levels; darker places say nothing on the lamp
@@ -72,29 +74,36 @@ def sample(frames: Iterable[Frame]) -> list[Picture]:
             step *= 2
             if count % step:
                 continue
-        kept.append(frame.picture.copy())
+        kept.append(frame.picture)
     return kept
 
 
 def background_of(samples: list[Picture], black: float) -> Background:
     """The background of a recording from frames spread over it.
 
-    Each pixel is the mean of the samples near their median, after every sample was brought to the same brightness: a
-    mean of whole grey levels resolves a fraction of a level.
+    Block by block the median over time tells in which samples nothing was there; every pixel is the mean of those,
+    after each sample was brought to the same brightness. A mean of whole grey levels resolves a fraction of a level.
     """
     height, width = samples[0].shape
     factor = detection_factor((width, height))
     smalls = np.stack([shrink(picture, factor) - np.float32(black) for picture in samples])
-    rough = np.median(smalls, axis=0)
+    rough = _median(smalls)
     gains = np.stack([row_gains(small, rough) for small in smalls])
-    evened = smalls / gains[:, :, None]
-    small = np.median(evened, axis=0)
-    small_noise = MAD_TO_SD * np.median(np.abs(evened - small), axis=0)
-    level, noise = np.empty((height, width), np.float32), np.empty((height, width), np.float32)
-    for rows in _strips(height, width, len(samples)):
-        stack = np.stack([picture[rows].astype(np.float32) - np.float32(black) for picture in samples])
-        stack /= np.stack([full_rows(gain, factor, height)[rows] for gain in gains])[:, :, None]
-        level[rows], noise[rows] = _centre(stack)
+    smalls /= gains[:, :, None]
+    small = _median(smalls)
+    away = np.abs(smalls - small)
+    small_noise = np.float32(MAD_TO_SD) * _median(away)
+    usual = max(float(np.median(small_noise)), ROUNDING_NOISE / factor)
+    small_noise = np.maximum(cv2.blur(small_noise, (3, 3)), np.float32(usual))
+    quiet = (away < np.maximum(QUIET * small_noise, QUIET_FLOOR)).astype(np.uint8)
+
+    def evened(some: slice) -> Iterator[Image]:
+        return (_evened(one, gain, factor, black) for one, gain in zip(samples[some], gains[some], strict=True))
+
+    level = _mean(evened(slice(None)), quiet, factor)
+    some = slice(None, None, max(1, len(samples) // NOISE_SAMPLES))
+    scatter = _mean((np.abs(one - level) for one in evened(some)), quiet[some], factor)
+    noise = np.float32(np.sqrt(np.pi / 2)) * scatter  # from the mean absolute deviation of a normal distribution
     usual = max(float(np.median(noise[::3, ::3])), ROUNDING_NOISE)
     return Background(
         level=level,
@@ -102,9 +111,45 @@ def background_of(samples: list[Picture], black: float) -> Background:
         black=black,
         factor=factor,
         small=shrink(level, factor),
-        small_noise=np.maximum(cv2.blur(small_noise, (3, 3)), np.float32(usual / factor)),
+        small_noise=np.maximum(small_noise, np.float32(usual / factor)),
         small_texture=shrink(cv2.dilate(texture(level), np.ones((2 * factor - 1, 2 * factor - 1), np.uint8)), factor),
     )
+
+
+def _median(stack: Image) -> Image:
+    """Median over the first axis; numpy sorts faster along the last."""
+    return np.median(np.ascontiguousarray(np.moveaxis(stack, 0, -1)), axis=-1, overwrite_input=True).astype(np.float32)
+
+
+def _evened(picture: Picture, gains: Image, factor: int, black: float) -> Image:
+    """A sample at the brightness of the background."""
+    evened = picture.astype(np.float32)
+    evened -= np.float32(black)
+    evened /= full_rows(gains, factor, picture.shape[0])[:, None]
+    return evened
+
+
+def _mean(pictures: Iterable[Image], quiet: Mask, factor: int) -> Image:
+    """Mean over time of each pixel, of the samples in which its block and those around it are quiet.
+
+    Where that is never so, as at the rim of a ripple, it is the mean of all.
+    """
+    still = np.stack([cv2.erode(one, np.ones((3, 3), np.uint8)) for one in quiet])
+    still[:, still.sum(axis=0) == 0] = 1
+    total = None
+    for picture, blocks in zip(pictures, still, strict=True):
+        total = np.zeros_like(picture) if total is None else total
+        cv2.accumulate(picture, total, _full(blocks, factor, picture.shape))
+    assert total is not None
+    count = _full(still.sum(axis=0, dtype=np.uint8), factor, total.shape)
+    return np.divide(total, count, dtype=np.float32)
+
+
+def _full(blocks: Mask, factor: int, shape: tuple[int, ...]) -> Mask:
+    """Blocks as pixels; rows and columns beyond the last whole block belong to it."""
+    low, right = shape[0] - blocks.shape[0] * factor, shape[1] - blocks.shape[1] * factor
+    pixels = np.repeat(np.repeat(blocks, factor, axis=0), factor, axis=1)
+    return np.pad(pixels, ((0, low), (0, right)), mode="edge") if low or right else pixels
 
 
 def texture(level: Image) -> Image:
@@ -146,21 +191,3 @@ def full_rows(gains: Image, factor: int, height: int) -> Image:
     """Gains of the full rows, interpolated between the centres of the small ones."""
     centres = (np.arange(len(gains)) + 0.5) * factor - 0.5
     return np.interp(np.arange(height), centres, gains).astype(np.float32)
-
-
-def _strips(height: int, width: int, samples: int) -> Iterator[slice]:
-    """Bands of rows that keep the stack of samples small."""
-    rows = max(1, 4_000_000 // (width * samples))
-    for start in range(0, height, rows):
-        yield slice(start, min(start + rows, height))
-
-
-def _centre(stack: NDArray[Any]) -> tuple[Image, Image]:
-    """Mean of the samples near the median, and the noise of each pixel."""
-    middle = np.median(stack, axis=0)
-    away = np.abs(stack - middle)
-    noise = MAD_TO_SD * np.median(away, axis=0)
-    near = away < 3 * max(float(np.median(noise)), ROUNDING_NOISE)
-    count = near.sum(axis=0)
-    mean = np.where(count > 0, (stack * near).sum(axis=0) / np.maximum(count, 1), middle)
-    return mean.astype(np.float32), noise.astype(np.float32)

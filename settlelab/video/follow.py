@@ -18,7 +18,7 @@ from settlelab.video.linking import Linker, Sighting
 from settlelab.video.model import Clock, FloatArray, Track, TrackedRecording
 from settlelab.video.optics import scale_of
 from settlelab.video.silhouettes import Silhouette, changed_boxes, silhouettes, window_of, without_marks
-from settlelab.video.source import Frame, Source, open_recording
+from settlelab.video.source import Frame, Source, open_recording, read_ahead
 from settlelab.video.turning import Turn
 from settlelab.video.walls import find_walls
 
@@ -87,7 +87,7 @@ def follow_falls(video: Path, *, camera: Camera, column: Column | None = None) -
 def _look(source: Source, scene: Background) -> _Seen:
     """Measure every object of every frame."""
     times, numbers, found = [], [], []
-    for frame in source.frames():
+    for frame in read_ahead(source.frames()):
         times.append(frame.time)
         numbers.append(frame.number)
         found.append(_objects(frame, scene))

@@ -5,7 +5,9 @@ from __future__ import annotations
 import itertools
 import os
 import re
+from collections import deque
 from collections.abc import Iterator
+from concurrent.futures import ThreadPoolExecutor
 from contextlib import contextmanager
 from dataclasses import dataclass, field
 from pathlib import Path
@@ -23,6 +25,7 @@ PICTURE_SUFFIXES = frozenset({".png", ".tif", ".tiff"})
 LUMA_8_BIT = frozenset({"I420", "Y800"})  # undecoded luma of any other format is a wrong picture without a word
 LIMITED_RANGE_BLACK = 16.0  # ITU-R BT.601 and BT.709: luma 16..235
 SILENT = 0  # OpenCV's LOG_LEVEL_SILENT
+AHEAD = 4  # frames decoded before they are needed
 TRUNCATED_SHARE = 0.98  # of the frames that the header promises
 
 # FFmpeg's own messages off; read once, when the first video is opened, so it is set before
@@ -122,6 +125,15 @@ class PictureFolder:
                     self.notes.append(note)
                 continue
             yield Frame(number, float("nan"), picture)
+
+
+def read_ahead(frames: Iterator[Frame]) -> Iterator[Frame]:
+    """The same frames, decoded in another thread while those before are worked on."""
+    with ThreadPoolExecutor(1) as decoder:
+        waiting = deque(decoder.submit(next, frames, None) for _ in range(AHEAD))
+        while (frame := waiting.popleft().result()) is not None:
+            waiting.append(decoder.submit(next, frames, None))
+            yield frame
 
 
 def _open_file(path: Path) -> VideoFile:
