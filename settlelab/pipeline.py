@@ -83,7 +83,7 @@ def run_study(
         calibration=calibration,
         findings=findings(measured, calibration),
         notes=(*measured.doubts, *notes),
-        written=tuple(_write(out, study, tracked, measured, calibration)),
+        written=(*_write(out, study, tracked, measured, calibration), out / "figures", out / "overlays"),
     )
 
 
@@ -164,7 +164,7 @@ def _calibrate(study: Study, measured: Measured) -> tuple[Calibration | None, tu
         calibration = calibrate_drops(measured.drops, study.calibration, origin=origin)
     except FitError as error:
         return None, (f"no calibration: {error}",)
-    return calibration, calibration.notes
+    return calibration, calibration.notes[1:]  # the first one is the verdict, told among the findings
 
 
 def _write(
@@ -177,7 +177,7 @@ def _write(
     """Write the files of the design's Results, the lab report table first."""
     yield write_csv(lab_table(measured, calibration), LabRow, out / "lab_table.csv")
     yield write_csv(measured.drops, Drop, out / "drops.csv")
-    yield write_csv(_tracks(study, tracked), TrackPoint, out / "tracks.csv")
+    yield write_csv(_tracks(study, tracked), TrackPoint, out / "tracks.csv", digits=9)
     yield write_csv(measured.budget, None, out / "budget.csv")
     if calibration is not None:
         yield write_csv(calibration.ranking, None, out / "ranking.csv")

@@ -28,7 +28,7 @@ _INDENT = 12
     help="Write a still of each recording with a grid of pixels to DIR, to read marks from.",
 )
 def command(study: Path, stills: Path | None) -> None:
-    """Read a study and its tables, open its recordings, and tell what is wrong or assumed. Nothing is run."""
+    """Tell what is wrong with a study or assumed. Reads it and its tables, opens its recordings; nothing is run."""
     from settlelab.study import read_study, study_summary
 
     checked = read_study(study)

@@ -30,7 +30,7 @@ _ABSOLUTE_ZERO = 273.15  # K in 0 °C, for showing ranges
     help="A particle or drop table: which drag laws its columns allow, and why the others are left out.",
 )
 def command(name: str | None, table: Path | None) -> None:
-    """The published methods on board: name, use, range, source. With NAME, one of them in full."""
+    """List the published methods on board. With NAME, one of them in full."""
     if name is not None and table is not None:
         raise click.UsageError("give either a method or --for, not both")
     if table is not None:

@@ -12,7 +12,7 @@ from settlelab.cli import console
 @click.command("new")
 @click.argument("directory", metavar="DIR", type=click.Path(path_type=Path, file_okay=False))
 def command(directory: Path) -> None:
-    """Write a study folder to fill in: study file, bench tables, README."""
+    """Write a study folder to fill in. It holds a study file, bench tables and a README that explain each entry."""
     from settlelab.study import new_study
 
     console.written(new_study(directory))

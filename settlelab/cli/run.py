@@ -23,7 +23,10 @@ from settlelab.cli import console
     help="Recordings tracked at the same time; the results do not depend on it.",
 )
 def command(study: Path, out: Path | None, workers: int) -> None:
-    """Track all recordings of a study, measure, rank, calibrate and write the report."""
+    """Do the main job on a study. Tracks its recordings, measures, ranks, calibrates, and writes the report.
+
+    STUDY is a study.toml or the folder that holds one. A run that was stopped picks up where it was.
+    """
     from settlelab.pipeline import run_study
 
     with console.progress("tracking") as progress:

@@ -76,7 +76,7 @@ def command(
     suffix: Literal[".mp4", ".avi", ".mkv"],
     seed: int,
 ) -> None:
-    """A recording with known answers for a given camera, column and particle.
+    """Draw a recording with known answers. Camera, column, fluid and particles are yours to choose.
 
     Writes the video, truth.csv, and a study.toml with bench tables, so that `settlelab run DIR` works on it. All that
     is written says that it is simulated.

@@ -1,0 +1,5 @@
+"""`python -m settlelab` is the command line."""
+
+from settlelab.cli import main
+
+main()
