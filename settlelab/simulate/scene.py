@@ -80,8 +80,8 @@ class ShapeLaw:
     """
 
     descriptor: Descriptor = "corey_shape_factor"
-    stokes_exponent: float = 0.18
-    newton_exponent: float = 1.05
+    stokes_exponent: float = 0.30
+    newton_exponent: float = 1.60
     base: str = "clift-gauvin-1971"
 
     def drag_ratios(self, body: Body) -> tuple[float, float]:
