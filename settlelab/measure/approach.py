@@ -7,6 +7,7 @@ position is linear in all the rest.
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass
 
 import numpy as np
@@ -18,6 +19,7 @@ _SHORTEST, _LONGEST = 0.01, 1.5  # time constants that are tried, over the lengt
 _TRIED = 25  # time constants at a time
 _ROUNDS = 3
 _LOG_ODDS = np.log(20)  # an approach is taken as real where it is so much likelier than a straight line
+_BEYOND_WANDER = 3.0
 _SLOWEST, _FASTEST = -0.1, 3.0  # velocity at the first point over terminal velocity, of a possible approach
 
 
@@ -52,41 +54,49 @@ class _Trial:
     terminal: FloatArray
     variance: FloatArray
     deficit: FloatArray
+    bend: FloatArray  # largest distance of the decay from a straight line
     rss: FloatArray
     log_likelihood: FloatArray
 
 
-def find_approach(time: FloatArray, distance: FloatArray, swing: FloatArray) -> Approach | None:
+def find_approach(
+    time: FloatArray, distance: FloatArray, *, wander: float = 0.0, slowest: float = math.inf
+) -> Approach | None:
     """The approach that a track shows, or None where a straight line does as well.
 
-    An F-test compares the two on residuals freed of their correlation; the velocity at its end is averaged over time
-    constants and noise models, weighted by their likelihood.
+    It counts where it is 20 times likelier than a straight line, errors correlated or not. The velocity at its end is
+    averaged over time constants and noise models, weighted by their likelihood.
 
     Parameters
     ----------
     time, distance : (N,) array
         Growing times [s] and distances [m], without outliers.
-    swing : (N, q) array
-        Columns to be fitted along, such as the sine and cosine of a swing; q may be 0.
+    wander : float
+        How far the points may stray from the body's own path in a slow and smooth way [m]; an approach must bend the
+        path by three times as much.
+    slowest : float
+        Longest time constant that the body can have [s].
 
     Returns
     -------
     Approach or None
-        None also where the points are too few to tell: fewer than 7 + q.
+        None also where the points are too few to tell: fewer than 7.
     """
     length = time[-1] - time[0]
     scaled = (time - time[0]) / length
-    line = np.column_stack([np.ones_like(scaled), scaled, swing])
-    if len(time) < line.shape[1] + 5:
+    longest = min(_LONGEST, slowest / length)
+    if len(time) < 7 or longest <= _SHORTEST:
         return None
+    line = np.column_stack([np.ones_like(scaled), scaled])
     fit = regress(blocks(line), blocks(distance[:, None] - distance[0])[:, 0])
-    tried = np.geomspace(_SHORTEST, _LONGEST, _TRIED)
-    trial = _try(fit, scaled, blocks(line), tried)
+    trial = _try(fit, scaled, blocks(line), np.geomspace(_SHORTEST, longest, _TRIED))
     if not _log_odds(fit, trial) > _LOG_ODDS:
         return None
     for _ in range(_ROUNDS):
-        trial = _try(fit, scaled, blocks(line), _closer(trial))
+        trial = _try(fit, scaled, blocks(line), _closer(trial, longest))
     best = np.unravel_index(np.argmax(trial.log_likelihood), trial.log_likelihood.shape)
+    if trial.bend[best] < _BEYOND_WANDER * wander:
+        return None
     terminal, u = mixture(trial.terminal, trial.variance, weights(trial.log_likelihood))
     return Approach(
         terminal=terminal / length,
@@ -100,7 +110,8 @@ def find_approach(time: FloatArray, distance: FloatArray, swing: FloatArray) -> 
 def _try(fit: Regression, scaled: FloatArray, line: FloatArray, time_constant: FloatArray) -> _Trial:
     """Add one decay at a time to a fitted line: everything follows from the part of the decay across the line."""
     decay = blocks(np.exp(-scaled[:, None] / time_constant))
-    size = np.linalg.norm(decay - line @ np.linalg.lstsq(line, decay, rcond=None)[0], axis=0)
+    bent = decay - line @ np.linalg.lstsq(line, decay, rcond=None)[0]
+    size = np.linalg.norm(bent, axis=0)
     whitened = noise_models(len(decay)).whitening @ (decay / size)
     along = np.einsum("hnp,hnk->hpk", fit.basis, whitened)
     across = whitened - np.einsum("hnp,hpk->hnk", fit.basis, along)
@@ -118,6 +129,7 @@ def _try(fit: Regression, scaled: FloatArray, line: FloatArray, time_constant: F
         terminal=terminal,
         variance=rss / (fit.degrees - 3) * (np.sum(fit.inverse[:, 1] ** 2, axis=1)[:, None] + tilt**2 / square),
         deficit=deficit,
+        bend=np.abs(amount) * np.max(np.abs(bent), axis=0) / size,
         rss=rss,
         log_likelihood=np.where(possible, log_likelihood, -np.inf),
     )
@@ -134,11 +146,11 @@ def _log_odds(fit: Regression, trial: _Trial) -> float:
     return float(logsumexp(approach) - np.log(_TRIED) - np.log(count) / 2 - logsumexp(fit.log_likelihood))
 
 
-def _closer(trial: _Trial) -> FloatArray:
+def _closer(trial: _Trial, longest: float) -> FloatArray:
     """Time constants four standard deviations about the likely ones, at least a grid step, within the first range."""
     logs = np.log(trial.time_constant)
     weight = weights(trial.log_likelihood).sum(axis=0)
     mean = np.sum(weight * logs)
     reach = np.maximum(4 * np.sqrt(np.sum(weight * (logs - mean) ** 2)), logs[1] - logs[0])
-    ends = np.clip([mean - reach, mean + reach], np.log(_SHORTEST), np.log(_LONGEST))
+    ends = np.clip([mean - reach, mean + reach], np.log(_SHORTEST), np.log(longest))
     return np.exp(np.linspace(ends[0], ends[1], _TRIED))

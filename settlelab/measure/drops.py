@@ -134,7 +134,7 @@ def _particles(study: Study, recording: Recording, tracked: TrackedRecording) ->
 def _add_drop(tables: _Tables, fall: _Fall, particle: Particle | None) -> None:
     """Measure and judge one fall, and write it into the tables."""
     number = len(tables.drops) + 1
-    view = view_of(fall.track, fall.tracked)
+    view = _view(fall, particle)
     row = row_of(fall.track, fall.tracked, view)
     row |= {"drop": number, "recording": fall.recording.name, "fluid": fall.recording.fluid.name}
     if particle is None:
@@ -154,6 +154,15 @@ def _add_drop(tables: _Tables, fall: _Fall, particle: Particle | None) -> None:
         )
     if particle.control and verdict["accepted"]:
         tables.controls.append(_control_row(number, fall, particle, grain, result))
+
+
+def _view(fall: _Fall, particle: Particle | None) -> View:
+    """The fall as seen, judged with what is known of the particle."""
+    if particle is None:
+        return view_of(fall.track, fall.tracked)
+    density = particle.density.value if particle.density is not None else math.nan
+    ratio = density / fall.setup.fluid.density
+    return view_of(fall.track, fall.tracked, density_ratio=ratio, sphere=particle.diameter is not None)
 
 
 def _result(fall: _Fall, particle: Particle, grain: Grain, view: View) -> Fallen:

@@ -14,9 +14,17 @@ from settlelab.measure.acceptance import Finding, finding, near_wall, verdict
 from settlelab.measure.model import Drop, TrackPoint, Velocity
 from settlelab.measure.noise import FloatArray
 from settlelab.measure.velocity import terminal_velocity
+from settlelab.physics.constants import STANDARD_GRAVITY
 from settlelab.video.model import Track, TrackedRecording
 
 __all__ = ["View", "drop_table", "measure_falls", "row_of", "track_table", "view_of"]
+
+# The centre of an angular grain's silhouette moves against its centre of mass by so much of its diameter while it turns
+# (k = 1; simulated grains), in full where the circularity is below 1 by so much.
+WANDER, ANGULAR = 0.03, 0.02
+# Time constants beyond so many times that of Stokes' drag are taken for something else than an approach; the history
+# force draws its end out by about this much.
+SLOWEST = 3.0
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -42,7 +50,7 @@ class View:
         return [*found, wall] if wall is not None else found
 
 
-def view_of(track: Track, tracked: TrackedRecording) -> View:
+def view_of(track: Track, tracked: TrackedRecording, *, density_ratio: float = math.nan, sphere: bool = False) -> View:
     """Velocity and silhouette of one fall.
 
     Parameters
@@ -51,9 +59,18 @@ def view_of(track: Track, tracked: TrackedRecording) -> View:
         The fall.
     tracked : TrackedRecording
         The recording that it belongs to.
+    density_ratio : float
+        Particle over fluid density, where known: limits how slowly the particle can approach its terminal velocity.
+    sphere : bool
+        Whether the particle is known to be a sphere, whose silhouette keeps its centre however it turns.
     """
     scale = tracked.scale.value
-    velocity = terminal_velocity(track.time, track.y * scale)
+    velocity = terminal_velocity(
+        track.time,
+        track.y * scale,
+        wander=0.0 if sphere else _wander(track) * scale,
+        slowest=_slowest_approach(track, scale, density_ratio),
+    )
     window = slice(velocity.first, velocity.last + 1)
     wall_distance = _median(track.wall_distance[window])
     off_axis = math.nan
@@ -61,12 +78,32 @@ def view_of(track: Track, tracked: TrackedRecording) -> View:
         off_axis = 1 - 2 * wall_distance / (tracked.walls[1] - tracked.walls[0])
     return View(
         velocity=velocity,
-        projected_diameter=math.sqrt(4 * _median(track.area[window]) / math.pi) * scale,
+        projected_diameter=_projected_diameter(track.area[window]) * scale,
         circularity=_median(track.circularity[window]),
         aspect_ratio=_median(track.aspect_ratio[window]),
         off_axis=off_axis,
         wall_distance=wall_distance * scale,
     )
+
+
+def _wander(track: Track) -> float:
+    """How far the silhouette's centre may move against the centre of mass [px], k = 1; none for a round silhouette."""
+    angularity = min((1 - _median(track.circularity)) / ANGULAR, 1.0)
+    return WANDER * _projected_diameter(track.area) * max(angularity, 0.0)
+
+
+def _projected_diameter(area: FloatArray) -> float:
+    return math.sqrt(4 * _median(area) / math.pi)
+
+
+def _slowest_approach(track: Track, scale: float, density_ratio: float) -> float:
+    """Longest time constant of an approach [s]: that of Stokes' drag at the mean velocity, with room for history."""
+    lighter = abs(density_ratio - 1)
+    span = float(track.time[-1] - track.time[0]) if len(track.time) > 1 else 0.0
+    if not lighter > 0 or span == 0:
+        return math.inf
+    mean = abs(float(track.y[-1] - track.y[0])) * scale / span
+    return SLOWEST * mean * (density_ratio + 0.5) / (STANDARD_GRAVITY * lighter)
 
 
 def _median(values: FloatArray) -> float:

@@ -7,7 +7,9 @@ laid through what is left, a swing of the particle fitted along. Errors are take
 from __future__ import annotations
 
 import math
+from collections.abc import Callable
 from dataclasses import dataclass
+from functools import partial
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -39,7 +41,9 @@ class _Swing:
     speed: float
 
 
-def terminal_velocity(time: ArrayLike, distance: ArrayLike) -> Velocity:
+def terminal_velocity(
+    time: ArrayLike, distance: ArrayLike, *, wander: float = 0.0, slowest: float = math.inf
+) -> Velocity:
     """Terminal velocity of one fall, with its standard uncertainty and how nearly it was reached.
 
     - Points further than 5 robust standard deviations from the curve of the fall are set aside.
@@ -59,6 +63,12 @@ def terminal_velocity(time: ArrayLike, distance: ArrayLike) -> Velocity:
         Times of the positions [s]; gaps do no harm.
     distance : (N,) array
         Positions along gravity [m].
+    wander : float
+        How far the centre of the silhouette may move against the centre of mass during the fall [m], k = 1: a slowly
+        turning grain shows no sign of it in the residuals. Over the length of the window it adds to the uncertainty.
+    slowest : float
+        Longest time constant that an approach of this particle can have [s], where that is known; what bends the path
+        more slowly is no approach.
 
     Returns
     -------
@@ -75,7 +85,7 @@ def terminal_velocity(time: ArrayLike, distance: ArrayLike) -> Velocity:
     t, y = t[kept], sign * y[kept]
     inlying = _inlying(t, y)
     kept, t, y = kept[inlying], t[inlying], y[inlying]
-    first, approach, steady = _steady_window(t, y)
+    first, approach, steady = _steady_window(t, y, wander=wander, slowest=slowest)
     fraction = 1.0 if approach is None else 1 - abs(float(approach.missing(t[-1])))
     flags: tuple[str, ...] = ("accelerating",) if fraction < ARRIVED else ()
     if approach is not None and not steady:
@@ -88,7 +98,7 @@ def terminal_velocity(time: ArrayLike, distance: ArrayLike) -> Velocity:
         flags += ("wobbling",) if swing > SWING_SPEED * value else ()
     return Velocity(
         value=sign * value,
-        u=u,
+        u=math.hypot(u, wander / float(t[-1] - t[0])),
         fraction_of_terminal=fraction,
         first=int(kept[first]),
         last=int(kept[-1]),
@@ -115,13 +125,16 @@ def _inlying(time: FloatArray, distance: FloatArray) -> NDArray[np.bool_]:
     return inlying if np.count_nonzero(inlying) >= FEWEST else np.ones_like(inlying)
 
 
-def _steady_window(time: FloatArray, distance: FloatArray) -> tuple[int, Approach | None, bool]:
+def _steady_window(
+    time: FloatArray, distance: FloatArray, *, wander: float, slowest: float
+) -> tuple[int, Approach | None, bool]:
     """Index at which the steady window begins, the last approach that was found, and whether the window is steady."""
+    find = partial(find_approach, wander=wander, slowest=slowest)
     first: int = 0
     found: Approach | None = None
     for _ in range(_ROUNDS):
         t, y = time[first:], distance[first:]
-        found = _approach_beyond(found, t, y)
+        found = _approach_beyond(find, found, t, y)
         missing = 0.0 if found is None else abs(float(found.missing(t[0])))
         if found is None or missing <= STEADY:
             break
@@ -132,14 +145,18 @@ def _steady_window(time: FloatArray, distance: FloatArray) -> tuple[int, Approac
     return first, found, True
 
 
-def _approach_beyond(found: Approach | None, time: FloatArray, distance: FloatArray) -> Approach | None:
+def _approach_beyond(
+    find: Callable[[FloatArray, FloatArray], Approach | None],
+    found: Approach | None,
+    time: FloatArray,
+    distance: FloatArray,
+) -> Approach | None:
     """The approach in a window: the one found before, or a new one where that leaves another unexplained."""
-    none = np.empty((len(time), 0))
     if found is None:
-        return find_approach(time, distance, none)
-    if find_approach(time, found.straightened(time, distance), none) is None:
+        return find(time, distance)
+    if find(time, found.straightened(time, distance)) is None:
         return found
-    return find_approach(time, distance, none) or found
+    return find(time, distance) or found
 
 
 def _mean_missing(approach: Approach, time: FloatArray) -> float:

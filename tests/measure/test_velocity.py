@@ -170,6 +170,35 @@ def test_a_faint_swing_is_not_flagged() -> None:
     assert terminal_velocity(time, time + 5e-4 * np.sin(20 * time)).flags == ()
 
 
+def slow_turn(time: np.ndarray, wander: float) -> np.ndarray:
+    """A grain at velocity 1 whose silhouette's centre wanders as it makes half a turn."""
+    return time + wander * np.cos(3.0 * time + 0.5)
+
+
+def test_a_wandering_centre_is_no_approach() -> None:
+    time = np.linspace(0.0, 1.0, 80)
+    distance = slow_turn(time, 1e-3) + 2e-5 * np.random.default_rng(13).standard_normal(80)
+    assert terminal_velocity(time, distance).fraction_of_terminal < 1  # so smooth a bend looks like one
+    found = terminal_velocity(time, distance, wander=1e-3)
+    assert (found.fraction_of_terminal, found.first) == (1.0, 0)
+    assert found.value == pytest.approx(1.0, abs=3 * found.u)
+    assert found.u > 1e-3
+
+
+def test_what_is_slower_than_the_particle_can_be_is_no_approach() -> None:
+    time = np.linspace(0.0, 1.0, 80)
+    distance = slow_turn(time, 1e-3) + 2e-5 * np.random.default_rng(13).standard_normal(80)
+    assert terminal_velocity(time, distance, slowest=0.05).fraction_of_terminal == 1.0
+
+
+def test_a_real_approach_is_seen_beyond_the_wandering() -> None:
+    time = np.linspace(0.0, 1.0, 120)
+    distance = stokes_fall(time, 0.03) + 1e-4 * np.random.default_rng(14).standard_normal(120)
+    found = terminal_velocity(time, distance, wander=1e-3, slowest=0.1)
+    assert found.value == pytest.approx(1.0, abs=2 * found.u)
+    assert found.first > 5
+
+
 @pytest.mark.parametrize("count", [0, 1, 7])
 def test_too_few_points(count: int) -> None:
     found = terminal_velocity(np.arange(count), np.arange(count))
