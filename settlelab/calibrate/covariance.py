@@ -18,6 +18,7 @@ __all__ = ["add_scatter", "deviance", "known_covariance", "restricted_scatter", 
 
 FLOOR = 1e-4  # no velocity is known to better than 0.01 %, which also keeps the covariance invertible
 _OF_FLUID = frozenset({"fluid_density", "viscosity"})
+_FINE = 3e-3  # of the search: far below what any number of drops tells about a scatter
 _NEGLIGIBLE = 1e-3  # an estimated scatter below 0.1 % is none
 
 
@@ -94,7 +95,7 @@ def restricted_scatter(
         start,
         method="Nelder-Mead",
         bounds=[(0.0, 3.0)] * len(structure),
-        options={"xatol": 1e-3, "fatol": 1e-4},
+        options={"xatol": _FINE, "fatol": _FINE},
     )
     scatter = np.asarray(found.x * size)
     return np.where(scatter < _NEGLIGIBLE, 0.0, scatter)
@@ -117,9 +118,9 @@ def deviance(residual: FloatArray, jacobian: FloatArray, covariance: FloatArray,
     Restricted: the part of it that does not depend on the parameters, whose maximum estimates a scatter without the
     bias of having fitted them.
     """
-    lower = cholesky(covariance, lower=True)
-    r = solve_triangular(lower, residual, lower=True)
-    x = solve_triangular(lower, jacobian, lower=True)
+    lower = cholesky(covariance, lower=True, check_finite=False)
+    both = solve_triangular(lower, np.column_stack([jacobian, residual]), lower=True, check_finite=False)
+    x, r = both[:, :-1], both[:, -1]
     q, triangle = np.linalg.qr(x)
     r = r - q @ (q.T @ r)
     value = 2 * np.sum(np.log(np.diag(lower))) + r @ r + (len(r) - restricted * x.shape[1]) * np.log(2 * np.pi)

@@ -32,7 +32,7 @@ from settlelab.physics.constants import BoolArray, FloatArray
 __all__ = ["LawFit", "Solution", "fit_form", "judge_law", "least_squares"]
 
 _ROUNDS = 8  # of parameters and weights in turn; three or four settle
-_SETTLED = 1e-3  # change of parameters over their uncertainty at which it has settled
+_SETTLED = 1e-2  # change of parameters over their uncertainty at which it has settled
 _ILL = 1e6  # condition number of the scaled derivatives at which parameters cannot be told apart
 _STEP = 1e-5  # of the derivatives to the parameters, relative to their scale
 SPARE_PARTICLES = 3  # more than there are parameters

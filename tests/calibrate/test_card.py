@@ -250,7 +250,7 @@ def test_fluids_of_the_card(calibration: Calibration) -> None:
 
 
 def test_fluids_in_print() -> None:
-    """At 20 °C, water 998.2 kg/m3, 1.0016 mPa s (IAPWS); glycerol 50 % 1126 kg/m3, 6.0 mPa s (handbook, from memory)."""
+    """At 20 °C: water 998.2 kg/m3, 1.0016 mPa s (IAPWS); glycerol 50 % 1126 kg/m3, 6.0 mPa s (handbook, memory)."""
     water, glycerol = fluid_in_print("water", 293.15), fluid_in_print("glycerol-water", 293.15, 0.5)
     assert water.density == pytest.approx(998.2, abs=0.05)
     assert float(water.rheology.viscosity(1.0)) == pytest.approx(1.0016e-3, rel=2e-4)
