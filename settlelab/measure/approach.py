@@ -13,7 +13,8 @@ from dataclasses import dataclass
 import numpy as np
 from scipy.special import logsumexp
 
-from settlelab.measure.noise import FloatArray, Regression, blocks, mixture, noise_models, regress, weights
+from settlelab.measure.noise import Regression, blocks, mixture, noise_models, regress, weights
+from settlelab.physics.constants import FloatArray
 
 _SHORTEST, _LONGEST = 0.01, 1.5  # time constants that are tried, over the length of the track
 _TRIED = 25  # time constants at a time
@@ -99,8 +100,8 @@ def find_approach(
         return None
     terminal, u = mixture(trial.terminal, trial.variance, weights(trial.log_likelihood))
     return Approach(
-        terminal=terminal / length,
-        u=u / length,
+        terminal=float(terminal / length),
+        u=float(u / length),
         start=float(time[0]),
         time_constant=float(trial.time_constant[best[1]] * length),
         deficit=float(trial.deficit[best]),

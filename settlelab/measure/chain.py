@@ -11,9 +11,9 @@ import numpy as np
 from settlelab.errors import SettlelabError
 from settlelab.measure.fluids import FluidState, flow_curve
 from settlelab.measure.model import Velocity
-from settlelab.measure.noise import FloatArray
 from settlelab.measure.particle import Grain
 from settlelab.measure.propagation import Effect, Estimate, propagate
+from settlelab.physics.constants import FloatArray
 from settlelab.physics.drag import drag_coefficient_from_velocity, generalised_reynolds
 from settlelab.physics.walls import WallFactor, equivalent_bore, unbounded_velocity
 from settlelab.study.model import Column

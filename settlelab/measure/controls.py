@@ -11,9 +11,9 @@ import pandas as pd
 
 from settlelab.measure.chain import Fallen, Setup
 from settlelab.measure.fluids import flow_curve
-from settlelab.measure.noise import FloatArray
 from settlelab.measure.particle import Grain
 from settlelab.measure.propagation import Effect, Estimate, propagate
+from settlelab.physics.constants import FloatArray
 from settlelab.physics.drag import DRAG, terminal_velocity
 from settlelab.physics.walls import wall_factor
 

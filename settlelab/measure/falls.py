@@ -12,9 +12,8 @@ import pandas as pd
 
 from settlelab.measure.acceptance import Finding, finding, near_wall, verdict
 from settlelab.measure.model import Drop, TrackPoint, Velocity
-from settlelab.measure.noise import FloatArray
 from settlelab.measure.velocity import terminal_velocity
-from settlelab.physics.constants import STANDARD_GRAVITY
+from settlelab.physics.constants import STANDARD_GRAVITY, FloatArray
 from settlelab.video.model import Track, TrackedRecording
 
 __all__ = ["View", "drop_table", "measure_falls", "row_of", "track_table", "view_of"]

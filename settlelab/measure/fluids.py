@@ -8,8 +8,8 @@ from dataclasses import dataclass
 import numpy as np
 
 from settlelab.errors import SettlelabError
-from settlelab.measure.noise import FloatArray
 from settlelab.measure.propagation import Effect, shifted
+from settlelab.physics.constants import FloatArray
 from settlelab.physics.flow_curve import fit_rheology
 from settlelab.physics.liquids import (
     LIQUIDS,

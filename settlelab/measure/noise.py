@@ -12,9 +12,8 @@ from dataclasses import dataclass
 from functools import lru_cache
 
 import numpy as np
-from numpy.typing import NDArray
 
-FloatArray = NDArray[np.float64]
+from settlelab.physics.constants import FloatArray
 
 _BLOCKS = 48  # positions are averaged to at most so many before the regression
 _CORRELATION_TIMES = (0.03, 0.08, 0.2, 0.5)  # over the length of the window

@@ -12,7 +12,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from settlelab.measure.noise import FloatArray
+from settlelab.physics.constants import FloatArray
 
 __all__ = ["Effect", "Estimate", "propagate"]
 

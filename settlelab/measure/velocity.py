@@ -8,7 +8,6 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable
-from dataclasses import dataclass
 from functools import partial
 
 import numpy as np
@@ -16,7 +15,9 @@ from numpy.typing import ArrayLike, NDArray
 
 from settlelab.measure.approach import Approach, find_approach
 from settlelab.measure.model import Velocity
-from settlelab.measure.noise import FloatArray, blocks, regress
+from settlelab.measure.noise import blocks, regress
+from settlelab.measure.swing import find_swing
+from settlelab.physics.constants import FloatArray
 
 __all__ = ["terminal_velocity"]
 
@@ -26,19 +27,9 @@ LAST_STAGE = 0.3  # share that may be missing where the approach is taken as exp
 WORTH_CUTTING = 0.3  # share of the points that a steady window must keep; else the approach is extrapolated
 ARRIVED = 0.98  # share of the terminal velocity below which the fall is still accelerating
 OUTLYING = 5.0  # robust standard deviations from the curve of the fall
-FEWEST_SWINGS = 2.0  # periods in the window
-SWING_SHARE = 0.6  # of the variance of the residuals
 SWING_SPEED = 0.02  # amplitude of the velocity of a swing over the terminal velocity, from which it is flagged
 
 _ROUNDS = 6  # an approach is seldom quite exponential: what is left of it is looked for again
-
-
-@dataclass(frozen=True, slots=True)
-class _Swing:
-    """A periodic residual: its columns for the regression (N, 2), and the amplitude of its velocity."""
-
-    columns: FloatArray
-    speed: float
 
 
 def terminal_velocity(
@@ -74,6 +65,11 @@ def terminal_velocity(
     -------
     Velocity
         `fraction_of_terminal` is that of the last point; 1 where no approach is seen.
+
+    Raises
+    ------
+    ValueError
+        Times that do not grow.
     """
     t, y = np.asarray(time, dtype=np.float64), np.asarray(distance, dtype=np.float64)
     kept = np.flatnonzero(np.isfinite(t) & np.isfinite(y))
@@ -81,12 +77,14 @@ def terminal_velocity(
         return Velocity(
             value=math.nan, u=math.nan, fraction_of_terminal=math.nan, first=0, last=len(t) - 1, flags=("short-track",)
         )
+    if np.any(np.diff(t[kept]) <= 0):
+        raise ValueError("times must grow from point to point")
     sign = -1.0 if y[kept[-1]] < y[kept[0]] else 1.0
     t, y = t[kept], sign * y[kept]
     inlying = _inlying(t, y)
     kept, t, y = kept[inlying], t[inlying], y[inlying]
     first, approach, steady = _steady_window(t, y, wander=wander, slowest=slowest)
-    fraction = 1.0 if approach is None else 1 - abs(float(approach.missing(t[-1])))
+    fraction = 1.0 if approach is None else max(1 - abs(float(approach.missing(t[-1]))), 0.0)
     flags: tuple[str, ...] = ("accelerating",) if fraction < ARRIVED else ()
     if approach is not None and not steady:
         value = approach.terminal
@@ -170,40 +168,8 @@ def _straight(time: FloatArray, distance: FloatArray) -> tuple[float, float, flo
     length = time[-1] - time[0]
     s = (time - time[0]) / length
     line = np.column_stack([np.ones_like(s), s])
-    swing = _find_swing(s, distance)
+    swing = find_swing(s, distance)
     design = line if swing is None else np.column_stack([line, swing.columns])
     columns = blocks(np.column_stack([design, distance - distance[0]]))
     slope, u = regress(columns[:, :-1], columns[:, -1]).averaged(1)
-    return slope / length, u / length, 0.0 if swing is None else swing.speed / length
-
-
-def _find_swing(s: FloatArray, distance: FloatArray) -> _Swing | None:
-    """The sine about a straight line that explains most, if that is enough to be one; `s` runs from 0 to 1."""
-    y = blocks(distance[:, None])[:, 0]
-    coarse = np.arange(FEWEST_SWINGS, len(y) / 4, 0.25)
-    if coarse.size == 0:
-        return None
-    near = coarse[int(np.argmax(_explained(s, y, coarse)[0]))]
-    cycles = near + np.linspace(-0.25, 0.25, 21)
-    explained, amplitude = _explained(s, y, cycles)
-    best = int(np.argmax(explained))
-    by_chance = coarse.size * (1 - explained[best]) ** ((len(y) - 4) / 2)
-    if explained[best] < SWING_SHARE or by_chance > 0.01:
-        return None
-    angle = 2 * np.pi * cycles[best] * s
-    speed = 2 * np.pi * float(cycles[best] * amplitude[best])
-    return _Swing(columns=np.column_stack([np.cos(angle), np.sin(angle)]), speed=speed)
-
-
-def _explained(s: FloatArray, y: FloatArray, cycles: FloatArray) -> tuple[FloatArray, FloatArray]:
-    """Share of the variance about a line that a sine of so many cycles explains, and its amplitude."""
-    angle = 2 * np.pi * s[:, None] * cycles
-    waves = np.stack([blocks(np.cos(angle)), blocks(np.sin(angle))], axis=-1)  # (n, M, 2)
-    line, _ = np.linalg.qr(blocks(np.column_stack([np.ones_like(s), s])))
-    residual = y - line @ (line.T @ y)
-    across = waves - np.einsum("np,pmq->nmq", line, np.einsum("np,nmq->pmq", line, waves))
-    basis, triangle = np.linalg.qr(np.moveaxis(across, 1, 0))
-    part = np.einsum("mnq,n->mq", basis, residual)
-    explained = np.sum(part**2, axis=1) / max(float(residual @ residual), 1e-300)
-    amplitude = np.linalg.norm(np.linalg.solve(triangle, part[..., None])[..., 0], axis=1)
-    return explained, np.asarray(amplitude)
+    return float(slope / length), float(u / length), 0.0 if swing is None else float(swing.speed / length)

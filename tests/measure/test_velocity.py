@@ -207,6 +207,11 @@ def test_too_few_points(count: int) -> None:
     assert math.isnan(found.u)
 
 
+def test_times_must_grow() -> None:
+    with pytest.raises(ValueError, match="times must grow"):
+        terminal_velocity([0, 1, 2, 3, 3, 4, 5, 6], range(8))
+
+
 def test_eight_points_are_enough() -> None:
     time = np.arange(8) / 120
     found = terminal_velocity(time, 0.2 * time + 1e-5 * np.random.default_rng(1).standard_normal(8))
