@@ -76,13 +76,20 @@ def flow_curve(properties: Mapping[str, FloatArray]) -> Rheology:
 
 
 @dataclass(frozen=True, slots=True)
+class _Told:
+    """What the user must know about a property: one sentence each, or nothing."""
+
+    assumed: str = ""
+    doubt: str = ""
+
+
+@dataclass(frozen=True, slots=True)
 class _Property:
     """A density or a viscosity: its value, and the standard uncertainty by source, sign kept."""
 
     value: float
     effects: dict[str, float]
-    assumed: str = ""
-    doubt: str = ""
+    told: _Told = _Told()
 
 
 def fluid_state(fluid: Fluid) -> FluidState:
@@ -100,23 +107,23 @@ def fluid_state(fluid: Fluid) -> FluidState:
     """
     density = _density(fluid)
     effects = [Effect(source, {"fluid_density": u}) for source, u in density.effects.items()]
-    notes = [density]
+    told = [density.told]
     if fluid.readings is not None:
-        rheology, flow_effects, told = _fitted(fluid, fluid.readings)
+        rheology, flow_effects, of_curve = _fitted(fluid, fluid.readings)
         effects += flow_effects
-        notes.append(told)
+        told.append(of_curve)
     else:
         viscosity = _viscosity(fluid)
         rheology = Rheology(consistency=viscosity.value)
         effects = _together(density, viscosity)
-        notes.append(viscosity)
+        told.append(viscosity.told)
     return FluidState(
         name=fluid.name,
         density=density.value,
         rheology=rheology,
         effects=tuple(effects),
-        assumed=tuple(note.assumed for note in notes if note.assumed),
-        doubts=tuple(note.doubt for note in notes if note.doubt),
+        assumed=tuple(each.assumed for each in told if each.assumed),
+        doubts=tuple(each.doubt for each in told if each.doubt),
     )
 
 
@@ -172,11 +179,11 @@ def _published(fluid: Fluid, name: str, source: str, equation: Callable[[float, 
         effects["mass fraction"] = change * fraction.u / float(ends[0] - ends[1])
     inside = bool(method.within(temperature=temperature.value, mass_fraction=fraction.value))
     beyond = f'fluid "{fluid.name}": {method.quantity} by {name} outside the range it is made for'
+    computed = f'fluid "{fluid.name}": {method.quantity} not measured; computed for {method.liquid} by {name}'
     return _Property(
         value=value,
         effects=effects,
-        assumed=f'fluid "{fluid.name}": {method.quantity} not measured; computed for {method.liquid} by {name}',
-        doubt="" if inside else beyond,
+        told=_Told(computed, "" if inside else beyond),
     )
 
 
@@ -186,7 +193,7 @@ def _needed(fluid: Fluid, what: str, quantity: Quantity | None) -> Quantity:
     return quantity
 
 
-def _fitted(fluid: Fluid, readings: ViscometerReadings) -> tuple[Rheology, list[Effect], _Property]:
+def _fitted(fluid: Fluid, readings: ViscometerReadings) -> tuple[Rheology, list[Effect], _Told]:
     """The flow curve of viscometer readings, its uncertainty as independent effects of the source "viscosity".
 
     Where the readings scatter by more than their uncertainty allows, the covariance is widened by the reduced chi
@@ -199,15 +206,12 @@ def _fitted(fluid: Fluid, readings: ViscometerReadings) -> tuple[Rheology, list[
     axes = np.sqrt(np.maximum(values, 0.0) * birge) * vectors  # columns: independent directions
     names = ["log_consistency" if name == "consistency" else name for name in fit.names]
     effects = [Effect("viscosity", dict(zip(names, axis.tolist(), strict=True))) for axis in axes.T]
-    curve = f'fluid "{fluid.name}": viscometer readings scatter about the {fit.model} curve by {birge**0.5:.2g} times'
-    told = _Property(
-        value=float(consistency),
-        effects={},
-        assumed=f'fluid "{fluid.name}": flow curve from {readings.file.name}; {fit.model} fits it best'
-        if fluid.rheology == "best"
-        else "",
-        doubt=f"{curve} their uncertainty" if birge > DOUBTFUL_CHI_SQUARE else "",
+    chosen = f'fluid "{fluid.name}": flow curve from {readings.file.name}; {fit.model} fits it best'
+    scatter = (
+        f'fluid "{fluid.name}": viscometer readings scatter about the {fit.model} curve by {birge**0.5:.2g} times '
+        "their uncertainty"
     )
+    told = _Told(chosen if fluid.rheology == "best" else "", scatter if birge > DOUBTFUL_CHI_SQUARE else "")
     return fit.rheology, effects, told
 
 

@@ -7,7 +7,7 @@ import numpy as np
 import pytest
 
 from settlelab.errors import SettlelabError
-from settlelab.measure import Drop, measure_study
+from settlelab.measure import Drop, measure_falls, measure_study
 from settlelab.measure.controls import CONTROL_COLUMNS
 from settlelab.study.model import Column, Fluid, Particle
 from settlelab.units import Quantity
@@ -166,6 +166,17 @@ def test_the_same_input_gives_the_same_table() -> None:
     one, two = (measure_study(study(GRAIN, OTHER), [recording]) for _ in range(2))
     assert one.drops.equals(two.drops)
     assert one.budget.equals(two.budget)
+
+
+def test_a_known_density_tells_a_turning_grain_from_an_approach() -> None:
+    """In this oil the grain is at terminal velocity after some 20 ms; a bend over two seconds is something else."""
+    steady = track(0.036, seconds=2.0, circularity=1.0)
+    bent = replace(steady, y=steady.y + 3.0 * np.cos(1.5 * (steady.time - 0.5)))
+    alone = measure_falls(tracked(bent)).iloc[0]
+    drop = measure_study(study(GRAIN), [tracked(bent)]).drops.iloc[0]
+    assert alone["fraction_of_terminal"] < 1.0
+    assert drop["fraction_of_terminal"] == 1.0
+    assert drop["first_time"] == pytest.approx(0.5)
 
 
 def test_scale_is_that_of_the_recording() -> None:

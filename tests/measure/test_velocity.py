@@ -227,6 +227,22 @@ def same(one: Velocity, other: Velocity, *, factor: float) -> bool:
     )
 
 
+@settings(max_examples=60, deadline=None)
+@given(
+    steps=st.lists(st.tuples(st.floats(1e-3, 1e-1), st.floats(-1.0, 1.0)), min_size=8, max_size=80),
+    wander=st.sampled_from([0.0, 0.1]),
+    slowest=st.sampled_from([1e-6, 0.1, math.inf]),
+)
+def test_any_path_gives_an_answer(steps: list[tuple[float, float]], wander: float, slowest: float) -> None:
+    time, distance = np.cumsum(np.array(steps), axis=0).T
+    found = terminal_velocity(time, distance, wander=wander, slowest=slowest)
+    assert math.isfinite(found.value)
+    assert math.isfinite(found.u)
+    assert found.u >= 0
+    assert 0.0 <= found.fraction_of_terminal <= 1.0
+    assert 0 <= found.first < found.last < len(steps)
+
+
 @settings(max_examples=25, deadline=None)
 @given(
     length=st.floats(1e-3, 1e3),
