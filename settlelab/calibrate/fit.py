@@ -28,6 +28,7 @@ from settlelab.calibrate.forms import Form, Parameter
 from settlelab.calibrate.observations import Observations
 from settlelab.errors import FitError
 from settlelab.physics.constants import BoolArray, FloatArray
+from settlelab.physics.least_squares import minimise
 
 __all__ = ["LawFit", "Solution", "fit_form", "judge_law", "least_squares"]
 
@@ -78,7 +79,7 @@ class LawFit:
 
 
 def least_squares(residual: Callable[[FloatArray], FloatArray], parameters: Sequence[Parameter]) -> Solution:
-    """Parameters that make the sum of squared residuals least, sought by Levenberg and Marquardt's method.
+    """Parameters that make the sum of squared residuals least, sought inside the bounds by a trust region.
 
     Parameters
     ----------
@@ -103,7 +104,7 @@ def least_squares(residual: Callable[[FloatArray], FloatArray], parameters: Sequ
 
     start = float(np.sum(objective(scaled) ** 2))
     try:
-        found = lmfit.minimize(objective, scaled, scale_covar=False, ftol=1e-12, xtol=1e-12, calc_covar=False)
+        found = minimise(objective, scaled, method="least_squares", ftol=1e-12, xtol=1e-12)
     except ValueError as error:  # lmfit's word for residuals that are not numbers
         raise FitError("the law gives no velocity for some drops") from error
     values = scale * np.array([found.params[name].value for name in scaled])

@@ -30,9 +30,9 @@ def test_a_table_typed_by_hand(tmp_path: Path) -> None:
     table = typed(draw(power_law_of_shape(), Lots(), 3), tmp_path / "paper.csv")
     result = run(str(table), "--out", str(tmp_path / "out"), "--by", "nobody", "--date", "2031-05-02")
     assert result.exit_code == 0, result.output
-    assert "stokes-newton-power of sphericity is used" in " ".join(result.stdout.split())
-    assert "b = 3." in result.stdout
-    assert "note: No column diameter is given" in result.stderr
+    assert "stokes-newton-power of sphericity is used" in " ".join(result.output.split())
+    assert "b = 3." in result.output
+    assert "note: No column diameter is given" in result.output
     ranking = pd.read_csv(tmp_path / "out" / "ranking.csv")
     assert ranking.columns[:9].tolist() == [
         "method", "kind", "drops", "particles", "in_range_percent", "bias_percent", "rms_percent", "max_percent",
@@ -45,7 +45,7 @@ def test_a_table_typed_by_hand(tmp_path: Path) -> None:
     predictions = pd.read_csv(tmp_path / "out" / "predictions.csv")
     assert {"drop", "method", "predicted_velocity_mm_s", "deviation_percent", "in_range"} <= set(predictions.columns)
     assert len(list((tmp_path / "out" / "figures").glob("*.svg"))) >= 3
-    for line in result.stdout.splitlines():
+    for line in result.output.splitlines():
         if line.startswith("wrote "):
             assert Path(line.removeprefix("wrote ")).exists()
 
@@ -54,7 +54,7 @@ def test_noise_keeps_the_published_law(tmp_path: Path) -> None:
     table = typed(draw(published("ganser-1993"), Lots(scatter=0.11, particles=24), 5), tmp_path / "t.csv")
     result = run(str(table), "--out", str(tmp_path / "out"))
     assert result.exit_code == 0, result.output
-    assert "is kept" in result.stdout
+    assert "is kept" in result.output
     assert json.loads((tmp_path / "out" / "calibration.json").read_text(encoding="utf-8"))["law"]["kind"] == "published"
 
 
@@ -69,7 +69,7 @@ def test_a_choice_that_cannot_be_met(tmp_path: Path, options: list[str], sentenc
     table = typed(draw(power_law_of_shape(), Lots(particles=6), 3), tmp_path / "t.csv")
     result = run(str(table), "--out", str(tmp_path / "out"), *options)
     assert result.exit_code == 1
-    assert sentence in result.stderr
+    assert sentence in result.output
     assert not (tmp_path / "out").exists()
 
 
@@ -78,16 +78,16 @@ def test_a_bad_table_is_one_message(tmp_path: Path) -> None:
     table.write_text("velocity [mm/s],sphericity\nfast,2\n", encoding="utf-8")
     result = run(str(table), "--out", str(tmp_path / "out"))
     assert result.exit_code == 1
-    assert '"fast" is not a velocity' in result.stderr
-    assert '"2" is not a number above 0 and at most 1' in result.stderr
-    assert "particle density [kg/m3]" in result.stderr
+    assert '"fast" is not a velocity' in result.output
+    assert '"2" is not a number above 0 and at most 1' in result.output
+    assert "particle density [kg/m3]" in result.output
     assert "Traceback" not in result.output
 
 
 def test_a_missing_table(tmp_path: Path) -> None:
     result = run(str(tmp_path / "none.csv"), "--out", str(tmp_path / "out"))
     assert result.exit_code == 1
-    assert "none.csv: missing, expected a table that can be read" in result.stderr
+    assert "none.csv: missing, expected a table that can be read" in result.output
 
 
 def test_out_is_needed(tmp_path: Path) -> None:

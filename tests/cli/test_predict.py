@@ -28,12 +28,12 @@ def run(*arguments: str) -> Result:
 def test_a_size_in_a_fluid(card: str) -> None:
     result = run(card, *FLUID, "--diameter", "2.5 mm", "--diameter", "40 mm", "--sphericity", "0.7")
     assert result.exit_code == 0, result.output
-    rows = [line for line in result.stdout.splitlines() if " to " in line]
+    rows = [line for line in result.output.splitlines() if " to " in line]
     assert rows[0].split()[0] == "2.5"
     assert "outside" not in rows[0]
     assert rows[1].endswith("outside the calibration: Reynolds number, equivalent diameter")
-    assert "A column test in still fluid is not a hole-cleaning design" in result.stderr
-    assert "note: The particle density is not given: 2600 kg/m3, the median of the calibration." in result.stderr
+    assert "A column test in still fluid is not a hole-cleaning design" in result.output
+    assert "note: The particle density is not given: 2600 kg/m3, the median of the calibration." in result.output
 
 
 def test_sieve_sizes_unless_told_otherwise(card: str, tmp_path: Path) -> None:
@@ -44,8 +44,8 @@ def test_sieve_sizes_unless_told_otherwise(card: str, tmp_path: Path) -> None:
     assert table["velocity_mm_s"].is_monotonic_increasing
     assert (table["prediction_low_mm_s"] < table["velocity_mm_s"]).all()
     assert (tmp_path / "prediction.svg").read_bytes().startswith(b"<?xml")
-    assert "Sizes are sieve openings (ASTM E11), taken as diameters of the sphere of equal volume." in result.stderr
-    assert "The sphericity is not given" in result.stderr
+    assert "Sizes are sieve openings (ASTM E11), taken as diameters of the sphere of equal volume." in result.output
+    assert "The sphericity is not given" in result.output
 
 
 def test_a_table_of_particles(card: str, tmp_path: Path) -> None:
@@ -56,26 +56,26 @@ def test_a_table_of_particles(card: str, tmp_path: Path) -> None:
     table = pd.read_csv(tmp_path / "prediction.csv")
     assert table["particle_density_kg_m3"].tolist() == [2600, 2700]
     assert table["velocity_mm_s"].is_monotonic_increasing
-    assert "median" not in result.stderr
+    assert "median" not in result.output
 
 
 def test_a_liquid_in_print_and_a_fluid_of_the_card(card: str) -> None:
     water = run(card, "--liquid", "water", "--temperature", "20 °C", "--diameter", "2 mm")
     assert water.exit_code == 0, water.output
-    assert "in water by properties in print" in water.stdout
+    assert "in water by properties in print" in water.output
     named = run(card, "--fluid", "fluid 2", "--diameter", "2 mm")
-    assert 'in the fluid "fluid 2" of the calibration' in named.stdout
+    assert 'in the fluid "fluid 2" of the calibration' in named.output
     same = run(card, *FLUID, "--diameter", "2 mm")
-    assert named.stdout.splitlines()[4:] == same.stdout.splitlines()[4:]
+    assert named.output.splitlines()[4:] == same.output.splitlines()[4:]
 
 
 def test_a_power_law_fluid_slows(card: str) -> None:
     mud = ["--consistency", "0.5 Pa s^n", "--flow-index", "0.6", "--fluid-density", "1150 kg/m3", "--diameter", "3 mm"]
     result = run(card, *mud)
     assert result.exit_code == 0, result.output
-    assert "flow index" in result.stdout  # outside: no power-law fluid in the calibration
+    assert "flow index" in result.output  # outside: no power-law fluid in the calibration
     held = run(card, *mud, "--yield-stress", "20 Pa")
-    assert "0 to 0" in held.stdout
+    assert "0 to 0" in held.output
 
 
 @pytest.mark.parametrize(
@@ -92,7 +92,7 @@ def test_a_power_law_fluid_slows(card: str) -> None:
 def test_wrong_usage_is_2(card: str, arguments: list[str], sentence: str) -> None:
     result = run(card, *arguments)
     assert result.exit_code == 2
-    assert sentence in result.stderr
+    assert sentence in result.output
 
 
 @pytest.mark.parametrize(
@@ -110,7 +110,7 @@ def test_wrong_usage_is_2(card: str, arguments: list[str], sentence: str) -> Non
 def test_what_cannot_be_predicted_is_1(card: str, arguments: list[str], sentence: str) -> None:
     result = run(card, *arguments)
     assert result.exit_code == 1
-    assert sentence in result.stderr
+    assert sentence in result.output
     assert "Traceback" not in result.output
 
 
@@ -119,5 +119,5 @@ def test_bad_sizes_are_named(card: str, tmp_path: Path) -> None:
     sizes.write_text("diameter [mm],sphericity\n-2,0.8\nbig,1.8\n", encoding="utf-8")
     result = run(card, *FLUID, "--particles", str(sizes))
     assert result.exit_code == 1
-    assert 'sizes.csv, row 2, column "diameter [mm]": "-2" is not a length above 0' in result.stderr
-    assert "row 3" in result.stderr
+    assert 'sizes.csv, row 2, column "diameter [mm]": "-2" is not a length above 0' in result.output
+    assert "row 3" in result.output
