@@ -21,10 +21,12 @@ Mask = NDArray[np.uint8]
 SAMPLE_BYTES = 100_000_000  # of kept frames
 MOST_SAMPLES, FEWEST_SAMPLES = 49, 9
 DETECTION_PIXELS = 120_000  # of the small picture on which changes are looked for
+SMOOTHED = {1: 1.2, 2: 0.7}  # standard deviation in blocks, by the side of a block
 LARGEST_FACTOR = 4  # a particle of 3 px must still show in the small picture
 QUIET, QUIET_FLOOR = 3.5, 1.0  # times the noise of a block, or grey levels: nothing is there
 NOISE_SAMPLES = 12
 MAD_TO_SD = 1.4826  # normal distribution
+REACH_OF_A_VALUE = 4.0  # px, side of the square over which a value of the small picture is a mean
 ROUNDING_NOISE = 0.3  # grey levels, of rounding to whole levels: 1/sqrt(12)
 DARKEST = 8.0  # grey levels; darker places say nothing on the lamp
 ROW_SMOOTHING = 4.0  # small rows; flicker bands of a rolling shutter are wider
@@ -44,12 +46,17 @@ class Background:
 
 
 def shrink(picture: Picture, factor: int) -> Image:
-    """Block means, float32; rows and columns that fill no block are left out."""
+    """Block means, smoothed where the blocks are small; rows and columns that fill no block are left out.
+
+    Either way a value holds about the light of a particle of 3 px, so that a faint one stands out of the noise.
+    """
     height, width = picture.shape[0] // factor, picture.shape[1] // factor
     whole = picture[: height * factor, : width * factor]
-    if factor == 1:
-        return whole.astype(np.float32)
-    return cv2.resize(whole, (width, height), interpolation=cv2.INTER_AREA).astype(np.float32)
+    blocks = cv2.resize(whole, (width, height), interpolation=cv2.INTER_AREA) if factor > 1 else whole
+    small = blocks.astype(np.float32)
+    if factor in SMOOTHED:
+        cv2.GaussianBlur(small, (0, 0), SMOOTHED[factor], dst=small)
+    return small
 
 
 def detection_factor(size: tuple[int, int]) -> int:
@@ -93,7 +100,7 @@ def background_of(samples: list[Picture], black: float) -> Background:
     small = _median(smalls)
     away = np.abs(smalls - small)
     small_noise = np.float32(MAD_TO_SD) * _median(away)
-    usual = max(float(np.median(small_noise)), ROUNDING_NOISE / factor)
+    usual = max(float(np.median(small_noise)), ROUNDING_NOISE / REACH_OF_A_VALUE)
     small_noise = np.maximum(cv2.blur(small_noise, (3, 3)), np.float32(usual))
     quiet = (away < np.maximum(QUIET * small_noise, QUIET_FLOOR)).astype(np.uint8)
 
@@ -111,7 +118,7 @@ def background_of(samples: list[Picture], black: float) -> Background:
         black=black,
         factor=factor,
         small=shrink(level, factor),
-        small_noise=np.maximum(small_noise, np.float32(usual / factor)),
+        small_noise=np.maximum(small_noise, np.float32(usual / REACH_OF_A_VALUE)),
         small_texture=shrink(cv2.dilate(texture(level), np.ones((2 * factor - 1, 2 * factor - 1), np.uint8)), factor),
     )
 

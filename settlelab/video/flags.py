@@ -23,9 +23,11 @@ def short_track(points: Points) -> bool:
     return len(points.y) < FEW_POINTS or bool(points.y[-1] - points.y[0] < FEW_DIAMETERS * points.diameter)
 
 
-def gap(points: Points) -> bool:
-    """Lost for at least one frame and found again."""
-    return bool(np.any(np.diff(points.index) > 1))
+def gap(path: Sequence[Sighting], points: Points) -> bool:
+    """Lost for at least one frame and found again, between its first and its last counted point."""
+    index = np.array([one.index for one in path])
+    counted = index[(index >= points.index[0]) & (index <= points.index[-1])]
+    return bool(np.any(np.diff(counted) > 1))
 
 
 def edge(path: Sequence[Sighting], points: Points) -> bool:

@@ -17,8 +17,10 @@ from settlelab.video.falls import Points, counting_points, drifting, why_not_a_f
 from settlelab.video.linking import Linker, Sighting
 from settlelab.video.model import Clock, FloatArray, Track, TrackedRecording
 from settlelab.video.optics import scale_of
+from settlelab.video.overlaps import alone, gaps_of, joint_views, unseen_ends
 from settlelab.video.silhouettes import Silhouette, changed_boxes, silhouettes, window_of, without_marks
 from settlelab.video.source import Frame, Source, open_recording, read_ahead
+from settlelab.video.stitching import stitched
 from settlelab.video.turning import Turn
 from settlelab.video.walls import find_walls
 
@@ -110,7 +112,7 @@ def _paths(seen: _Seen, turn: Turn, ticks: FloatArray) -> list[list[Sighting]]:
     linker = Linker(turn.size[1])
     for index, objects in enumerate(seen.silhouettes):
         linker.add(float(ticks[index]), [_turned(one, index, turn) for one in objects], ticks)
-    return linker.paths()
+    return stitched(linker.paths(), ticks)
 
 
 def _turned(one: Silhouette, index: int, turn: Turn) -> Sighting:
@@ -138,8 +140,13 @@ def _judged(
 ) -> tuple[list[Track], list[Track]]:
     """The falls and the refused objects, each in order of appearance."""
     ticks = times * clock.frame_rate
-    kept = [counting_points(path, ticks) for path in paths]
+    gaps = gaps_of(paths)
+    joint = joint_views(paths, gaps)
+    unseen = gaps + unseen_ends(paths, joint)
+    kept = [counting_points(alone(number, path, unseen), ticks) for number, path in enumerate(paths)]
     reasons = [why_not_a_fall(path, points, ticks) for path, points in zip(paths, kept, strict=True)]
+    for index in joint:
+        reasons[index] = "two objects seen as one" if reasons[index] is not None else None
     series = {index: Points(kept[index], ticks) for index, reason in enumerate(reasons) if reason == ""}
     for index in drifting(series):
         reasons[index] = "drifts with the fluid: far slower than its size explains"
@@ -174,7 +181,7 @@ def _flags(
         "short-track": flags.short_track(points),
         "blurred": flags.blurred(kept, points),
         "edge": flags.edge(path, points),
-        "gap": flags.gap(points),
+        "gap": flags.gap(path, points),
         "clock": clock.irregular,
     }
     return tuple(name for name, is_raised in raised.items() if is_raised)

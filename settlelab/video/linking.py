@@ -14,9 +14,12 @@ MEMORY = 8  # points from which the next one is predicted
 CONFIRMED = 3  # points after which a prediction is trusted
 FIRST_STEP = 0.15  # of the picture height: the farthest an object moves before its speed is known
 GATE_FLOOR = 3.0  # px
-LARGEST_SIZE_JUMP = np.log(2.5)  # of the area from one frame to the next
+NEW_JUMP = np.log(2.5)  # of the area from one frame to the next, before an object is known well
+SETTLED = 5  # points after which it is
+SETTLED_JUMP = np.log(1.35)  # then, besides what noise does to a small area
+NOISE_JUMP = 1.5  # px, over the square root of the area
 SIZE_WEIGHT = 0.5  # of a size jump against a missed prediction, both over their largest
-GAP_TRAVEL = 12.0  # px besides three diameters: how far an object may pass unseen, behind a mark of the column
+GAP_TRAVEL, GAP_DIAMETERS = 20.0, 6.0  # px, and diameters: how far it may pass unseen, behind a mark or another object
 SHORTEST_GAP, LONGEST_GAP = 5.0, 150.0  # frame intervals
 UNKNOWN_GAP = 1.5  # frame intervals that an object may be lost before its speed is known
 FORBIDDEN = 1e6
@@ -62,13 +65,22 @@ class _Path:
             slope = spread @ (place - place.mean(axis=0)) / (spread @ spread)
             self.velocity = (float(slope[0]), float(slope[1]))
 
+    @property
+    def largest_jump(self) -> float:
+        """Of the logarithm of the area, that the next sighting may show; a plate that tumbles has shown such before."""
+        if len(self.sightings) < SETTLED:
+            return float(NEW_JUMP)
+        areas = np.log([one.area for one in self.sightings[-MEMORY:]])
+        noise = NOISE_JUMP / np.sqrt(self.sightings[-1].area)
+        return float(max(SETTLED_JUMP + noise, 1.5 * np.abs(np.diff(areas)).max()))
+
     def patience(self) -> float:
         """How long it may stay unseen, frame intervals."""
         if len(self.sightings) < CONFIRMED:
             return UNKNOWN_GAP
         assert self.velocity is not None
         speed = float(np.hypot(*self.velocity))
-        travel = 3 * self.sightings[-1].diameter + GAP_TRAVEL
+        travel = GAP_DIAMETERS * self.sightings[-1].diameter + GAP_TRAVEL
         return float(np.clip(travel / max(speed, 1e-6), SHORTEST_GAP, LONGEST_GAP))
 
 
@@ -118,12 +130,12 @@ class Linker:
     def _cost(self, path: _Path, sighting: Sighting, now: float) -> float:
         """Missed distance and size jump, each over the largest that is allowed."""
         last, passed = path.sightings[-1], now - path.seen
-        jump = abs(np.log(sighting.area / last.area))
-        if sighting.contrast * last.contrast < 0 or (jump > LARGEST_SIZE_JUMP and not (sighting.cut or last.cut)):
+        jump = abs(np.log(sighting.area / last.area)) / path.largest_jump
+        if sighting.contrast * last.contrast < 0 or (jump > 1 and not (sighting.cut or last.cut)):
             return FORBIDDEN
         known = path.velocity is not None
         miss = _miss(path, sighting, passed) if known else self._first_miss(last, sighting, passed)
-        return miss + SIZE_WEIGHT * jump / LARGEST_SIZE_JUMP if miss <= 1 else FORBIDDEN
+        return miss + SIZE_WEIGHT * jump if miss <= 1 else FORBIDDEN
 
     def _first_miss(self, last: Sighting, sighting: Sighting, passed: float) -> float:
         """Without a known speed: anything along gravity that is not too far, little across."""

@@ -20,11 +20,14 @@ from settlelab.video.background import DARKEST, Background, Image, texture
 FloatArray = NDArray[np.float64]
 Mask = NDArray[np.uint8]
 
-SMOOTHING = 0.8  # px, standard deviation of the Gaussian before the threshold
-NOISE_LEFT = 0.36  # of white noise after that smoothing: 1 / (2 sqrt(pi) 0.8)
+SMOOTHING = 1.2  # px, standard deviation of the Gaussian before the threshold
+NOISE_LEFT = 0.235  # of white noise after that smoothing: 1 / (2 sqrt(pi) 1.2)
+LIGHT_SMOOTHING = 0.7  # px, before levels are read off
 SEEN = 4.5  # times the smoothed noise: a pixel belongs to an object
-CERTAIN = 1.5  # times that limit: its peak makes it one
+CERTAIN = 1.4  # times that limit: its peak makes it one
 FAINTEST = 1.5  # grey levels; below that compression leaves marks of its own
+APART = 0.25  # of the peak: what is below lies between two objects
+SMALLEST_SHARE = 0.05  # of the largest of objects side by side; less is a shred of its edge
 REACH = 3  # px, how far beyond the mask an object's light is summed
 INSIDE = 3  # px from the edge of the half-level silhouette: certainly covered
 TEXTURE_SHARE = 0.08  # of the difference of neighbouring pixels: what a shake of a tenth of a pixel changes
@@ -82,8 +85,8 @@ def window_of(picture: NDArray[np.generic], box: tuple[int, int, int, int], gain
 
 def silhouettes(window: Window) -> list[Silhouette]:
     """Every object of a window, in the order of the picture."""
-    smooth = np.asarray(cv2.GaussianBlur(window.taken, (0, 0), SMOOTHING), dtype=np.float32)
-    change = np.abs(smooth) / window.limit
+    smooth = np.asarray(cv2.GaussianBlur(window.taken, (0, 0), LIGHT_SMOOTHING), dtype=np.float32)
+    change = np.abs(cv2.GaussianBlur(window.taken, (0, 0), SMOOTHING)) / window.limit
     count, labels, stats, _ = cv2.connectedComponentsWithStats((change > 1).astype(np.uint8), connectivity=8)
     found = []
     for label in range(1, count):
@@ -92,11 +95,27 @@ def silhouettes(window: Window) -> list[Silhouette]:
         mask = (labels == label).astype(np.uint8)
         if change[mask > 0].max() < CERTAIN:
             continue
-        others = ((labels > 0) & (labels != label)).astype(np.uint8)
-        silhouette = _measure(window, smooth, mask, others)
-        if silhouette is not None:
-            found.append(silhouette)
+        for part in _parts(np.abs(smooth), mask, window.limit):
+            others = ((labels > 0) & (part == 0)).astype(np.uint8)
+            silhouette = _measure(window, smooth, part, others)
+            if silhouette is not None:
+                found.append(silhouette)
     return found
+
+
+def _parts(change: Image, mask: Mask, limit: Image) -> list[Mask]:
+    """What falls apart at a quarter of the peak are objects side by side; each takes the pixels nearest to it."""
+    level = APART * float(change[mask > 0].max())
+    if level < limit[mask > 0].max():
+        return [mask]
+    count, labels, stats, _ = cv2.connectedComponentsWithStats(((change > level) & (mask > 0)).astype(np.uint8))
+    area = stats[1:count, cv2.CC_STAT_AREA]
+    cores = 1 + np.flatnonzero(area >= max(SMALLEST_AREA, SMALLEST_SHARE * area.max()))
+    if len(cores) < 2:
+        return [mask]
+    away = [cv2.distanceTransform((labels != core).astype(np.uint8), cv2.DIST_L2, 3) for core in cores]
+    nearest = np.argmin(away, axis=0)
+    return [((nearest == number) & (mask > 0)).astype(np.uint8) for number in range(len(cores))]
 
 
 def without_marks(found: list[Silhouette]) -> list[Silhouette]:
