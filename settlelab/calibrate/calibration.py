@@ -34,6 +34,7 @@ from settlelab.study.model import CalibrationChoice
 
 __all__ = ["calibrate_drops"]
 
+USUAL_SHAPES = ("sphericity", "corey_shape_factor")  # few candidates, so that none wins by luck
 FEWEST_LOTS = 3  # from which whole lots are left out as well
 ALIKE = 0.98  # correlation above which two parameters cannot be told apart
 FAR_OFF = 4.0  # standard deviations at which a particle is named
@@ -58,7 +59,8 @@ def calibrate_drops(
     drops : DataFrame
         Columns of `Drop` in SI; accepted drops of cuttings count. Missing columns are taken as unknown.
     choice : CalibrationChoice, optional
-        Descriptors and forms to use; where left out, every descriptor that nearly all drops have, and every form.
+        Descriptors and forms to use; where left out, sphericity and Corey shape factor, else whatever shape nearly
+        all drops have, and every form.
     origin : Origin, optional
         Title, date and author for the card.
 
@@ -102,8 +104,8 @@ def calibrate_drops(
 
 def _forms(choice: CalibrationChoice, seen: Observations, best: str) -> list[Form]:
     """The forms to fit: each kind once, those with a descriptor once for each descriptor."""
-    shapes = [name for name in seen.falls.descriptors if name not in ("lot", "density_ratio")]
-    shapes = list(choice.descriptors) or shapes
+    known = [name for name in seen.falls.descriptors if name not in ("lot", "density_ratio")]
+    shapes = list(choice.descriptors) or [name for name in USUAL_SHAPES if name in known] or known
     lots = tuple(dict.fromkeys(seen.lot.tolist()))
     forms = []
     for kind in choice.forms or FORMS:

@@ -14,13 +14,13 @@ from settlelab.calibrate.falls import INPUTS, Falls
 from settlelab.errors import FitError
 from settlelab.measure.model import Drop
 from settlelab.physics.constants import BoolArray, FloatArray
-from settlelab.physics.drag import DESCRIPTORS, generalised_reynolds, held
+from settlelab.physics.drag import DRAG, generalised_reynolds, held
 
 __all__ = ["FEWEST_DROPS", "Observations", "observe", "particle_means", "replicates"]
 
 FEWEST_DROPS = 3
 SHARE_WITH_DESCRIPTOR = 0.8  # of the drops; a descriptor that fewer have is left aside, else the drops without it are
-_SHAPES = (*(name for name in DESCRIPTORS if name != "density_ratio"), "aspect_ratio")
+OF_SILHOUETTE = ("circularity", "aspect_ratio")  # used where nothing better is known: one view of a turning particle
 _COLUMN = {"diameter": "equivalent_diameter"}  # column of an input where the names differ
 _POSITIVE = {
     "unbounded_velocity": "velocity",
@@ -100,8 +100,12 @@ def observe(drops: pd.DataFrame, descriptors: Sequence[str] = ()) -> tuple[Obser
     still = _held(used)
     notes += _set_aside(used[still], "the stated yield stress would hold the particle still")
     used = used[~still]
-    used, kept, lacking = _with_descriptors(used, (*_SHAPES, *descriptors))
+    asked_by_laws = [name for method in DRAG.values() for name in method.needs if name != "density_ratio"]
+    used, kept, lacking = _with_descriptors(used, (*asked_by_laws, *descriptors))
     notes += lacking
+    if not kept:
+        used, kept, lacking = _with_descriptors(used, OF_SILHOUETTE)
+        notes += lacking
     if missing := [name for name in descriptors if name not in kept]:
         raise FitError(f"the descriptor {missing[0]} is known for fewer than {SHARE_WITH_DESCRIPTOR:.0%} of the drops")
     if len(used) < FEWEST_DROPS:

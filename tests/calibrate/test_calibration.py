@@ -120,6 +120,16 @@ def test_corey_shape_factor_alone_calibrates_two_forms(shaped: pd.DataFrame) -> 
     }
 
 
+def test_a_silhouette_serves_where_nothing_better_is_known(shaped: pd.DataFrame) -> None:
+    silhouettes = shaped.assign(circularity=np.where(shaped.index == 2, np.nan, shaped["sphericity"]))
+    both = calibrate_drops(silhouettes)
+    assert not any("circularity" in fit.name for fit in both.fits)
+    assert both.ranking["drops"].eq(len(shaped)).all()  # the drop without silhouette counts
+    alone = calibrate_drops(silhouettes.drop(columns="sphericity"))
+    assert "stokes-newton-power of circularity" in {fit.name for fit in alone.fits}
+    assert "drop 3 left out of the comparison: circularity is unknown" in alone.notes
+
+
 def test_a_descriptor_of_the_lab_is_used_where_asked_for(shaped: pd.DataFrame) -> None:
     own = shaped.assign(roundness=shaped["sphericity"] ** 0.5)
     choice = CalibrationChoice(descriptors=("roundness",), forms=("stokes-newton-power",))
