@@ -2,10 +2,12 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, field
+from typing import Any
 
 import numpy as np
+from numpy.typing import NDArray
 from scipy.optimize import linear_sum_assignment
 
 from settlelab.video.model import FloatArray
@@ -22,6 +24,7 @@ SIZE_WEIGHT = 0.5  # of a size jump against a missed prediction, both over their
 GAP_TRAVEL, GAP_DIAMETERS = 20.0, 6.0  # px, and diameters: how far it may pass unseen, behind a mark or another object
 SHORTEST_GAP, LONGEST_GAP = 5.0, 150.0  # frame intervals
 UNKNOWN_GAP = 1.5  # frame intervals that an object may be lost before its speed is known
+TRUST, FIRST_TRUST = 0.3, 0.7  # of the speed, by which it may be wrong once confirmed, and before
 FORBIDDEN = 1e6
 
 
@@ -98,8 +101,11 @@ class Linker:
         waiting = [path for path in self._followed if now - path.seen <= path.patience()]
         self._ended += [path for path in self._followed if now - path.seen > path.patience()]
         left = list(sightings)
-        for known in (True, False):  # those whose speed is known choose first
-            paths = [path for path in waiting if (len(path.sightings) >= CONFIRMED) == known]
+        # those whose speed is known best choose first
+        settled = [path for path in waiting if len(path.sightings) >= CONFIRMED]
+        second = [path for path in waiting if path.velocity is not None and len(path.sightings) < CONFIRMED]
+        fresh = [path for path in waiting if path.velocity is None]
+        for paths in (settled, second, fresh):
             pairs = self._assign(paths, left, now)
             for path, sighting in pairs:
                 path.add(sighting, times)
@@ -119,7 +125,7 @@ class Linker:
     def _assign(self, paths: list[_Path], sightings: list[Sighting], now: float) -> list[tuple[_Path, Sighting]]:
         if not paths or not sightings:
             return []
-        cost = np.array([[self._cost(path, sighting, now) for sighting in sightings] for path in paths])
+        cost = self._cost(paths, sightings, now)
         rows, columns = linear_sum_assignment(cost)
         return [
             (paths[row], sightings[column])
@@ -127,29 +133,48 @@ class Linker:
             if cost[row, column] < FORBIDDEN
         ]
 
-    def _cost(self, path: _Path, sighting: Sighting, now: float) -> float:
-        """Missed distance and size jump, each over the largest that is allowed."""
-        last, passed = path.sightings[-1], now - path.seen
-        jump = abs(np.log(sighting.area / last.area)) / path.largest_jump
-        if sighting.contrast * last.contrast < 0 or (jump > 1 and not (sighting.cut or last.cut)):
-            return FORBIDDEN
-        known = path.velocity is not None
-        miss = _miss(path, sighting, passed) if known else self._first_miss(last, sighting, passed)
-        return miss + SIZE_WEIGHT * jump if miss <= 1 else FORBIDDEN
+    def _cost(self, paths: list[_Path], sightings: list[Sighting], now: float) -> FloatArray:
+        """Missed distance and size jump of every pair, each over the largest that is allowed; (paths, sightings)."""
+        last = [path.sightings[-1] for path in paths]
+        jump = np.abs(_differences(np.log, "area", last, sightings)) / _upright([path.largest_jump for path in paths])
+        cut = _upright([one.cut for one in last]) | np.array([one.cut for one in sightings])
+        same_side = _upright([one.contrast > 0 for one in last]) == np.array([one.contrast > 0 for one in sightings])
+        across = _differences(np.positive, "x", last, sightings)
+        down = _differences(np.positive, "y", last, sightings)
+        passed = _upright([now - path.seen for path in paths])
+        diameter = _upright([one.diameter for one in last])
+        if paths[0].velocity is None:
+            miss = self._first_miss(across, down, diameter, passed)
+        else:
+            miss = _miss(paths, across, down, diameter, passed)
+        allowed = same_side & (miss <= 1) & ((jump <= 1) | cut)
+        return np.where(allowed, miss + SIZE_WEIGHT * jump, FORBIDDEN)
 
-    def _first_miss(self, last: Sighting, sighting: Sighting, passed: float) -> float:
+    def _first_miss(self, across: FloatArray, down: FloatArray, diameter: FloatArray, passed: FloatArray) -> FloatArray:
         """Without a known speed: anything along gravity that is not too far, little across."""
-        down, across = sighting.y - last.y, sighting.x - last.x
-        farthest = max(self._first_step, 2 * last.diameter) * passed
-        aside = GATE_FLOOR + 0.5 * last.diameter + 0.25 * abs(down)
-        return float(np.hypot(down / farthest, across / aside))
+        farthest = np.maximum(self._first_step, 2 * diameter) * passed
+        aside = GATE_FLOOR + 0.5 * diameter + 0.25 * np.abs(down)
+        return np.hypot(down / farthest, across / aside)
 
 
-def _miss(path: _Path, sighting: Sighting, passed: float) -> float:
+def _miss(
+    paths: list[_Path], across: FloatArray, down: FloatArray, diameter: FloatArray, passed: FloatArray
+) -> FloatArray:
     """Distance from the predicted place over the largest that is allowed."""
-    assert path.velocity is not None
-    last, (vx, vy) = path.sightings[-1], path.velocity
-    speed = float(np.hypot(vx, vy))
-    trust = 0.3 if len(path.sightings) >= CONFIRMED else 0.7
-    gate = GATE_FLOOR + (trust * speed + 0.1) * passed + 0.15 * last.diameter
-    return float(np.hypot(sighting.x - last.x - vx * passed, sighting.y - last.y - vy * passed) / gate)
+    vx, vy = (_upright(values) for values in zip(*(path.velocity or (0.0, 0.0) for path in paths), strict=True))
+    trust = _upright([TRUST if len(path.sightings) >= CONFIRMED else FIRST_TRUST for path in paths])
+    gate = GATE_FLOOR + (trust * np.hypot(vx, vy) + 0.1) * passed + 0.15 * diameter
+    return np.asarray(np.hypot(across - vx * passed, down - vy * passed) / gate)
+
+
+def _differences(
+    scale: Callable[[FloatArray], FloatArray], name: str, last: list[Sighting], sightings: list[Sighting]
+) -> FloatArray:
+    """How much larger a quantity is in each sighting (columns) than in each path's last (rows)."""
+    before, after = (scale(np.array([getattr(one, name) for one in each])) for each in (last, sightings))
+    return after - before[:, None]
+
+
+def _upright(values: Sequence[float]) -> NDArray[Any]:
+    """One row for each path."""
+    return np.array(values)[:, None]
