@@ -224,7 +224,7 @@ def _notes(
         notes.append(f"{best.name} is used outside its stated range for {outside} of {len(best.in_range)}.")
     if chosen is not None:
         notes += [f"{chosen.name}: {warning}." for warning in chosen.warnings]
-    far = np.abs(state.residual) > FAR_OFF * np.sqrt(np.diag(state.weights))
+    far = np.abs(state.residual) > FAR_OFF * np.sqrt(state.weights.variance)
     notes += [_far_off(far, means)] if np.any(far) else []
     if not np.any(means.velocity_u):
         notes.append("No uncertainty of the velocities is stated: the scatter between particles alone weights the fit.")

@@ -16,12 +16,10 @@ import numpy as np
 from scipy.stats import t as student
 
 from settlelab.calibrate.covariance import (
-    add_scatter,
+    Covariance,
     deviance,
     known_covariance,
     restricted_scatter,
-    scatter_structure,
-    whiten,
 )
 from settlelab.calibrate.falls import Law, settle
 from settlelab.calibrate.forms import Form, Parameter
@@ -53,7 +51,7 @@ class Solution:
 class LawFit:
     """A law set against N observations; a published law has no parameters (P = 0).
 
-    `covariance` is that of the parameters, nan where one stands at a bound; `weights` (N, N) that of the observed ln V.
+    `covariance` is that of the parameters, nan where one stands at a bound; `weights` that of the observed ln V.
     """
 
     values: FloatArray
@@ -61,7 +59,7 @@ class LawFit:
     at_bound: BoolArray
     residual: FloatArray  # measured less fitted ln V
     jacobian: FloatArray  # (N, P), fitted ln V to the parameters
-    weights: FloatArray
+    weights: Covariance
     scatter: FloatArray  # between particles, and where it can be told apart of a particle between fluids
     repeatability: float
     aicc: float
@@ -151,13 +149,13 @@ def judge_law(law: Law, seen: Observations) -> LawFit:
     return _weigh(law, seen, np.empty((len(seen.drop), 0)))
 
 
-def _solve(form: Form, seen: Observations, weights: FloatArray) -> Solution:
+def _solve(form: Form, seen: Observations, weights: Covariance) -> Solution:
     """Parameters under fixed weights, always from the start of the form."""
     measured = np.log(seen.velocity)
-    (turn,) = whiten(weights, np.eye(len(measured)))
+    whitening = weights.whitening()
 
     def residual(values: FloatArray) -> FloatArray:
-        return np.asarray(turn @ (measured - _log_velocity(form.law(values), seen)))
+        return whitening.apply(measured - _log_velocity(form.law(values), seen))
 
     return least_squares(residual, form.parameters)
 
@@ -166,9 +164,9 @@ def _weigh(law: Law, seen: Observations, jacobian: FloatArray) -> LawFit:
     """Residuals, covariance and scatter of the observations about a law whose parameters are taken as found."""
     fitted = _log_velocity(law, seen)
     residual = np.log(seen.velocity) - fitted
-    known, structure = known_covariance(seen, law, np.exp(fitted)), scatter_structure(seen)
-    scatter = restricted_scatter(residual, jacobian, known, structure)
-    weights = add_scatter(known, structure, scatter)
+    known = known_covariance(seen, law, np.exp(fitted))
+    scatter = restricted_scatter(residual, jacobian, known)
+    weights = known.with_scatter(scatter)
     size, parameters = len(residual), jacobian.shape[1] + len(scatter)
     # the number of parameters counts the scatter too (Hurvich & Tsai 1989, Biometrika 76, 297-307)
     penalty = 2 * parameters * size / (size - parameters - 1) if size > parameters + 1 else np.inf
@@ -204,7 +202,7 @@ def _jacobian(form: Form, values: FloatArray, seen: Observations) -> FloatArray:
     return np.column_stack(columns)
 
 
-def _parameter_covariance(jacobian: FloatArray, weights: FloatArray) -> FloatArray:
+def _parameter_covariance(jacobian: FloatArray, weights: Covariance) -> FloatArray:
     """Covariance of generalised least squares.
 
     Raises
@@ -212,7 +210,7 @@ def _parameter_covariance(jacobian: FloatArray, weights: FloatArray) -> FloatArr
     FitError
         The observations do not determine the parameters.
     """
-    (turned,) = whiten(weights, jacobian)
+    turned = weights.whitening().apply(jacobian)
     size = np.linalg.norm(turned, axis=0)
     if np.any(size == 0) or np.linalg.cond(turned / size) > _ILL:
         raise FitError("the drops do not determine the parameters: their Reynolds numbers or shapes are too alike")

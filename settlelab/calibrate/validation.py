@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import numpy as np
 from numpy.typing import NDArray
-from scipy.linalg import cho_factor, cho_solve
 
 from settlelab.calibrate.fit import LawFit
 from settlelab.calibrate.forms import Form
@@ -38,7 +37,8 @@ def parameters_without(form: Form, fit: LawFit, groups: NDArray[np.int64]) -> Fl
     ----------
     Cook & Weisberg (1982), Residuals and Influence in Regression, Chapman & Hall, section 3.
     """
-    precision = cho_solve(cho_factor(fit.weights, lower=True), np.eye(len(fit.residual)))
+    root = fit.weights.whitening().apply(np.eye(len(fit.residual)))
+    precision = root.T @ root
     jacobian = np.where(fit.at_bound, 0.0, fit.jacobian)
     weighted = precision @ jacobian
     inverse = np.linalg.pinv(jacobian.T @ weighted, hermitian=True)
