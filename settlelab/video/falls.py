@@ -23,6 +23,7 @@ WANDER_FLOOR = 0.2  # px
 FAR_SLOWER, UNEXPLAINED = 0.1, 0.4  # see `drifting`
 SLOW = 0.5  # px per frame interval
 EVEN = 0.05  # of the way
+FAR = 30.0  # px; what was seen now and then on such a way down may have been a fall, and is told
 MENTIONED_TRAVEL = 3.0  # px; what moves less and is seen briefly is noise, not an object worth a line
 
 
@@ -110,15 +111,21 @@ def why_not_a_fall(path: Sequence[Sighting], kept: Sequence[Sighting], times: Fl
     whole = Points(path, times)
     if len(path) < FEWEST_POINTS:
         return "seen in too few frames" if len(path) > 2 and _keeps_going(whole) else None
+    if _flickers(whole):
+        return "seen in too few of the frames on its way" if whole.y[-1] - whole.y[0] > FAR else None
     if np.hypot(np.ptp(whole.x), np.ptp(whole.y)) < MENTIONED_TRAVEL:
         return None
     if whole.cut.all():
         return "never wholly in view"
     if len(kept) < FEWEST_POINTS:
-        return "wholly in view and in motion in too few frames"
-    if len(kept) < SEEN_SHARE * (kept[-1].index - kept[0].index + 1):
-        return "seen in too few of the frames on its way"
+        in_view = Points([one for one in path if not one.cut], times)
+        return _why_not_falling(in_view) or "wholly in view and in motion in too few frames"
     return _why_not_falling(Points(kept, times))
+
+
+def _flickers(points: Points) -> bool:
+    """Whether something is seen now and then only: a speck at the limit of the noise, or a mark of the codec."""
+    return len(points.index) < SEEN_SHARE * float(points.index[-1] - points.index[0] + 1)
 
 
 def _keeps_going(points: Points) -> bool:
