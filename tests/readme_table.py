@@ -23,9 +23,14 @@ def command_table() -> str:
     for name in main.list_commands(context):
         command = main.get_command(context, name)
         assert command is not None
-        arguments = " ".join(p.make_metavar(context) for p in command.params if isinstance(p, click.Argument))
+        arguments = " ".join(_placeholder(each) for each in command.params if isinstance(each, click.Argument))
         rows.append(f"| `{name} {arguments}`".rstrip("` ") + f"` | {command.get_short_help_str(limit=200)} |")
     return "\n".join(rows) + "\n"
+
+
+def _placeholder(argument: click.Argument) -> str:
+    name = argument.metavar or str(argument.name).upper()
+    return name if argument.required else f"[{name}]"
 
 
 def with_table(readme: str) -> str:

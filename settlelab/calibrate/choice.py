@@ -1,7 +1,9 @@
 """Published or calibrated: the honest choice.
 
-The rule. A calibrated form is taken only if, on particles left out of its fit, its mean squared deviation is smaller
-than that of the best published method by more than twice the standard error of the difference (bootstrap by particle).
+The rule. A calibrated form is taken only if, on particles left out of its fit, it deviates less from a particle, on
+average over the particles, than the best published method does, by more than twice the standard error of that gain
+(bootstrap by particle). Deviations are compared, not their squares: one particle that a law misses by far would swamp
+the standard error of a difference of squares, and hide a gain that every particle shows.
 Of several such forms the one with the fewest parameters is taken among those that the best of them does not beat by
 more than one standard error. Otherwise the published method is kept: a gain that could be noise is none.
 """
@@ -37,16 +39,16 @@ def choose(published: Contender, calibrated: Sequence[tuple[Contender, int]], se
             chosen=None, sentence=f"The published {published.name} is kept: no calibrated form could be fitted."
         )
     draws = particle_draws(len(np.unique(seen.particle)))
-    base = by_particle(seen, squared_error(published))
-    errors = [by_particle(seen, squared_error(contender)) for contender, _ in calibrated]
-    gains = [(float(np.mean(base - own)), float(np.std(draws @ (base - own)))) for own in errors]
+    base = _deviations(published, seen)
+    errors = [_deviations(contender, seen) for contender, _ in calibrated]
+    gains = [_gain(base, own, draws) for own in errors]
     clear = [number for number, (gain, error) in enumerate(gains) if gain > CLEAR_GAIN * error]
     if not clear:
         nearest = min(range(len(errors)), key=lambda number: float(np.mean(errors[number])))
         return Verdict(chosen=None, sentence=_kept(published, calibrated[nearest][0], errors[nearest], base))
     best = min(clear, key=lambda number: float(np.mean(errors[number])))
-    behind = [errors[number] - errors[best] for number in clear]
-    near = [number for number, gap in zip(clear, behind, strict=True) if np.mean(gap) <= np.std(draws @ gap)]
+    behind = [_gain(errors[number], errors[best], draws) for number in clear]
+    near = [number for number, (gap, error) in zip(clear, behind, strict=True) if gap <= error]
     taken = min(near, key=lambda number: (calibrated[number][1], float(np.mean(errors[number]))))
     gain, error = gains[taken]
     name = calibrated[taken][0].name
@@ -58,6 +60,16 @@ def choose(published: Contender, calibrated: Sequence[tuple[Contender, int]], se
     )
 
 
+def _deviations(contender: Contender, seen: Observations) -> FloatArray:
+    """Relative deviation from each particle (root mean square of its drops), left out of the fit where there is one."""
+    return np.sqrt(by_particle(seen, squared_error(contender)))
+
+
+def _gain(base: FloatArray, own: FloatArray, draws: FloatArray) -> tuple[float, float]:
+    """Mean gain over the particles, and its standard error."""
+    return float(np.mean(base - own)), float(np.std(draws @ (base - own)))
+
+
 def _kept(published: Contender, nearest: Contender, errors: FloatArray, base: FloatArray) -> str:
     return (
         f"The published {published.name} is kept: it deviates by {_rms(base)} % (root mean square), the best "
@@ -66,5 +78,5 @@ def _kept(published: Contender, nearest: Contender, errors: FloatArray, base: Fl
     )
 
 
-def _rms(squares: FloatArray) -> str:
-    return f"{100 * float(np.sqrt(np.mean(squares))):.1f}"
+def _rms(deviations: FloatArray) -> str:
+    return f"{100 * float(np.sqrt(np.mean(deviations**2))):.1f}"

@@ -71,7 +71,7 @@ class Form:
     def name(self) -> str:
         """How tables call it, such as `stokes-newton-power of sphericity` or `factor on chien-1994`."""
         if self.recipe.descriptor:
-            return f"{self.recipe.kind} of {self.recipe.descriptor}"
+            return f"{self.recipe.kind} of {self.recipe.descriptor.replace('_', ' ')}"
         by_lot = " by lot" if self.recipe.lots else ""
         return f"{self.recipe.kind}{by_lot} on {self.recipe.base}"
 

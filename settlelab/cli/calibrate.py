@@ -28,7 +28,7 @@ SHOWN = 5  # published methods printed; ranking.csv has them all
 def command(
     table: Path, out: Path, descriptors: tuple[str, ...], forms: tuple[str, ...], title: str, date: str, by: str
 ) -> None:
-    """Rank published drag laws on a drop table, fit the calibrated forms, and write the calibration card.
+    """Rank and calibrate drag laws on a drop table. Writes the ranking, predictions and the calibration card.
 
     TABLE is drops.csv of a study, or a table typed by hand with columns such as velocity [mm/s], equivalent
     diameter [mm], particle density [kg/m3], fluid density [kg/m3], viscosity [mPa s], sphericity.

@@ -70,7 +70,7 @@ def _named(text: str) -> tuple[str, float]:
     "--out", type=click.Path(path_type=Path, file_okay=False), help="Folder for prediction.csv and prediction.svg."
 )
 def command(card: Path, particles: Path | None, lot: str | None, out: Path | None, **given: Any) -> None:  # noqa: ANN401 (options of several types)
-    """Terminal velocities by a calibration card, with 95 % intervals, for other sizes and fluids."""
+    """Predict velocities by a calibration card. For other sizes and fluids, with 95 % intervals."""
     from settlelab.calibrate import predict, read_card
 
     law = read_card(card)

@@ -116,7 +116,7 @@ def _head(study: Study, measured: Measured, calibration: Calibration | None) -> 
         "findings": findings(measured, calibration),
         "signatures": study.report.signatures or SIGNATURES,
         "method": _method(measured.drops),
-        "lab_note": LAB_NOTE,
+        "lab_note": f"{LAB_NOTE}{_laws(calibration)}",
         "cautions": CAUTIONS,
         "doubts": measured.doubts,
     }
@@ -150,6 +150,14 @@ def _method(drops: pd.DataFrame) -> str:
         f" time in the part of the fall at steady speed; it is {corrected} to give the velocity in unbounded fluid."
         " Re and Cd are built on that velocity and the diameter of the sphere of equal volume."
     )
+
+
+def _laws(calibration: Calibration | None) -> str:
+    """Which laws the columns of the lab table mean; their names are too long for a heading."""
+    if calibration is None:
+        return ""
+    calibrated = f"; calibrated law: {calibration.chosen.name}" if calibration.chosen else ""
+    return f" Published law, the best of its kind: {calibration.best_published}{calibrated}."
 
 
 def _style() -> str:

@@ -121,7 +121,7 @@ RANKING = (
 
 
 def lab_view(lab: pd.DataFrame, system: UnitSystem) -> TableView:
-    """The lab report table; the fluid has a column where there are several, a correlation where it predicts."""
+    """The lab report table; the fluid has a column where there are several, a law where it predicts."""
     rows = lab.assign(drops_accepted=[f"{a} of {n}" for a, n in zip(lab["accepted"], lab["drops"], strict=True)])
     rows["particle"] = [
         name or f"mean of {count}" for name, count in zip(rows["particle"], rows["particles"], strict=True)
@@ -129,9 +129,9 @@ def lab_view(lab: pd.DataFrame, system: UnitSystem) -> TableView:
     columns = [show for show in LAB[:-1] if show.field != "fluid" or lab["fluid"].nunique() > 1]
     columns = [replace(show, heading=_shape_heading(lab)) if show.field == "shape" else show for show in columns]
     columns += [
-        Show(heading=f"{names[0]} (deviation)", field=f"{kind}_velocity", unit="mm/s", deviation=f"{kind}_deviation")
+        Show(heading=f"{kind} law (deviation)", field=f"{kind}_velocity", unit="mm/s", deviation=f"{kind}_deviation")
         for kind in ("published", "calibrated")
-        if (names := sorted(set(lab[f"{kind}_method"]) - {""}))
+        if set(lab[f"{kind}_method"]) - {""}
     ]
     lots = set(lab.index[lab["particle"] == ""])
     return table_view(rows, [*columns, LAB[-1]], system, lambda row: "lot" if row.name in lots else "")

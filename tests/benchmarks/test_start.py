@@ -19,8 +19,8 @@ def _seconds(*command: str) -> float:
 
 def test_help_answers_in_under_half_a_second(benchmark: BenchmarkFixture) -> None:
     command = (sys.executable, "-m", "settlelab", "--help")
-    bare = min(_seconds(sys.executable, "-c", "pass") for _ in range(5))
     benchmark.pedantic(_seconds, args=command, rounds=7, warmup_rounds=1)
-    quickest = benchmark.stats.stats.min
+    quickest = min(_seconds(*command) for _ in range(5))
+    bare = min(_seconds(sys.executable, "-c", "pass") for _ in range(5))
     benchmark.extra_info["times a bare interpreter"] = quickest / bare
     assert quickest < LIMIT

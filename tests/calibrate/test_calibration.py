@@ -115,7 +115,7 @@ def test_a_shape_known_for_few_drops_is_left_aside(shaped: pd.DataFrame) -> None
 
 def test_corey_shape_factor_alone_calibrates_two_forms(shaped: pd.DataFrame) -> None:
     found = calibrate_drops(shaped.rename(columns={"sphericity": "corey_shape_factor"}))
-    assert {"stokes-newton-power of corey_shape_factor", "velocity-power of corey_shape_factor"} <= {
+    assert {"stokes-newton-power of corey shape factor", "velocity-power of corey shape factor"} <= {
         fit.name for fit in found.fits
     }
 
