@@ -40,11 +40,14 @@ def test_results_do_not_depend_on_the_number_of_workers(tmp_path: Path) -> None:
 
 @pytest.mark.slow
 def test_stated_intervals_cover_the_truth(tmp_path: Path) -> None:
-    """The 95 % interval of the velocity in the column holds the truth in 90 to 99 % of at least 60 drops."""
+    """The 95 % interval of the velocity in the column holds the truth in 90 to 99 % of at least 60 drops.
+
+    One recording a study: the drops of a study share the error of its scale, and would count as one.
+    """
     parts = []
-    for seed in range(100, 110):
+    for seed in range(100, 130):
         folder = tmp_path / str(seed)
-        parts.append(measured(folder, random_study(folder, seed, recordings=3, drops=4)))
+        parts.append(measured(folder, random_study(folder, seed, recordings=1, drops=4)))
     drops = pd.concat(parts, ignore_index=True)
     assert len(drops) >= 60
     for control, group in drops.groupby("control"):
