@@ -54,9 +54,11 @@ class Entry:
         Raises
         ------
         ValueError
-            An input that the formula needs was not given.
+            An input that the formula needs was not given, or arrays whose shapes do not fit together.
         """
-        return np.asarray(self.formula(**self._taken(self.parameters, inputs)), dtype=np.float64)
+        taken = self._taken(self.parameters, inputs)
+        self._common_shape(taken)
+        return np.asarray(self.formula(**taken), dtype=np.float64)
 
     def within(self, **inputs: ArrayLike) -> BoolArray:
         """Where every range that the source states is kept; an unknown (nan) input does not keep it.
@@ -69,7 +71,7 @@ class Entry:
             An input of the formula, or a quantity with a stated range, was not given.
         """
         known = self._taken({**dict.fromkeys(self.parameters), **dict.fromkeys(self.valid)}, inputs)
-        inside = np.ones(np.broadcast_shapes(*(value.shape for value in known.values())), dtype=np.bool_)
+        inside = np.ones(self._common_shape(known), dtype=np.bool_)
         for name, (low, high) in self.valid.items():
             inside = inside & (known[name] >= low) & (known[name] <= high)
         return inside
@@ -79,6 +81,13 @@ class Entry:
         if missing:
             raise ValueError(f"{self.name} needs {' and '.join(missing)}")
         return {name: np.asarray(inputs[name], dtype=np.float64) for name in names}
+
+    def _common_shape(self, inputs: Mapping[str, FloatArray]) -> tuple[int, ...]:
+        try:
+            return np.broadcast_shapes(*(value.shape for value in inputs.values()))
+        except ValueError:
+            shapes = ", ".join(f"{name} {value.shape}" for name, value in inputs.items())
+            raise ValueError(f"{self.name}: arrays of these shapes do not fit together: {shapes}") from None
 
 
 E = TypeVar("E", bound=Entry)

@@ -6,7 +6,17 @@ terminal velocities in unbounded fluid. `DRAG` holds the published laws; importi
 
 from __future__ import annotations
 
-from settlelab.physics.drag import nonspherical, spheres
+from settlelab.physics.drag import (
+    chips,
+    explicit,
+    nonspherical,
+    sediment,
+    silhouettes,
+    sphere_crisis,
+    sphere_fits,
+    spheres,
+)
+from settlelab.physics.drag.mud import MUD, MudMethod, mud_terminal_velocity, wilson_terminal_velocity
 from settlelab.physics.drag.nonnewtonian import (
     CRITICAL_YIELD_NUMBER,
     creeping_correction,
@@ -37,21 +47,31 @@ __all__ = [
     "DERIVED",
     "DESCRIPTORS",
     "DRAG",
+    "MUD",
     "DragLaw",
     "Method",
+    "MudMethod",
     "Settling",
     "available_descriptors",
+    "chips",
     "creeping_correction",
     "drag_coefficient_from_velocity",
     "drag_in_fluid",
+    "explicit",
     "ganser_factors",
     "generalised_reynolds",
     "held",
+    "mud_terminal_velocity",
     "nonspherical",
     "power_law_correction",
     "published",
     "scaled_drag",
+    "sediment",
+    "silhouettes",
+    "sphere_crisis",
+    "sphere_fits",
     "spheres",
     "terminal_velocity",
     "usable_methods",
+    "wilson_terminal_velocity",
 ]
