@@ -170,12 +170,19 @@ def bagheri_bonadonna(
     reynolds: FloatArray, flatness: FloatArray, elongation: FloatArray, density_ratio: FloatArray
 ) -> FloatArray:
     """Drag coefficient of irregular particles by flatness, elongation and density ratio."""
-    form_stokes = flatness * elongation**1.3
-    form_newton = np.minimum(flatness**2 * elongation, 1.0)
-    drag_stokes = (form_stokes ** (1 / 3) + form_stokes ** (-1 / 3)) / 2
-    a = 0.45 + 10 / (np.exp(2.5 * np.log10(density_ratio)) + 30)
-    b = 1 - 37 / (np.exp(3 * np.log10(density_ratio)) + 100)
-    drag_newton = 10 ** (a * (-np.log10(form_newton)) ** b)
+    drag_stokes, drag_newton = bagheri_bonadonna_factors(flatness, elongation, density_ratio)
     scaled = reynolds * drag_newton / drag_stokes
     viscous = 24 * drag_stokes / reynolds * (1 + 0.125 * scaled ** (2 / 3))
     return np.asarray(viscous + 0.46 * drag_newton / (1 + 5330 / scaled))
+
+
+def bagheri_bonadonna_factors(
+    flatness: FloatArray, elongation: FloatArray, density_ratio: FloatArray
+) -> tuple[FloatArray, FloatArray]:
+    """Drag over that of the sphere in creeping flow and at high Re, kS and kN (2016), in random orientation."""
+    form_stokes = flatness * elongation**1.3
+    form_newton = np.minimum(flatness**2 * elongation, 1.0)
+    a = 0.45 + 10 / (np.exp(2.5 * np.log10(density_ratio)) + 30)
+    b = 1 - 37 / (np.exp(3 * np.log10(density_ratio)) + 100)
+    drag_stokes = (form_stokes ** (1 / 3) + form_stokes ** (-1 / 3)) / 2
+    return np.asarray(drag_stokes), np.asarray(10 ** (a * (-np.log10(form_newton)) ** b))

@@ -64,16 +64,17 @@ def jimenez_madsen(dstar: FloatArray) -> FloatArray:
     "dietrich-1982",
     source="Dietrich (1982), Water Resour. Res. 18, 1615-1626",
     where="eqs 8, 9 and later; his D* is the Archimedes number",
-    valid={"dstar": (0.368, 1710.0), "corey_shape_factor": (0.2, 1.0), "powers_roundness": (0.0, 6.0)},
+    valid={"dstar": (0.3685, 1709.0), "corey_shape_factor": (0.2, 1.0), "powers_roundness": (0.0, 6.0)},
     diameter="volume-equivalent",
-    note="Natural grains. The range is Ar 0.05 to 5e9; below it Stokes' law of a sphere stands, as in print, "
-    "whatever the shape. Of a sphere 8 to 10 % slow at Ar 18 to 100, else within 5 %. The shape terms have one "
-    "witness; at a shape factor of 0.15 and less there is no value.",
+    note="Natural grains. The range is Ar 0.05 to 5e9. Below it print has Stokes' law of a sphere whatever the "
+    "shape; here the velocity at Ar 0.05 is carried on in proportion to Ar instead, without that jump. Of a sphere 8 "
+    "to 10 % slow at Ar 18 to 100, else within 5 %. The shape terms have one witness; at a shape factor of 0.15 and "
+    "less there is no value.",
 )
 def dietrich(dstar: FloatArray, corey_shape_factor: FloatArray, powers_roundness: FloatArray) -> FloatArray:
     """Terminal Reynolds number of natural grains by Corey shape factor and roundness."""
-    archimedes = dstar**3
-    x = np.log10(np.maximum(archimedes, 0.05))
+    archimedes = np.maximum(dstar**3, 0.05)
+    x = np.log10(archimedes)
     flat = 1 - corey_shape_factor
     step = np.tanh(x - 4.6)
     size = np.polyval([0.00056, -0.00575, -0.09815, 1.92944, -3.76715], x)
@@ -81,7 +82,7 @@ def dietrich(dstar: FloatArray, corey_shape_factor: FloatArray, powers_roundness
     form = np.log10(base) - flat**2.3 * step + 0.3 * (0.5 - corey_shape_factor) * flat**2 * (x - 4.6)
     rough = (0.65 - corey_shape_factor / 2.83 * step) ** (1 + (3.5 - powers_roundness) / 2.5)
     # W* = V^3 / (R g nu), so that Re^3 = Ar W*
-    return np.where(archimedes < 0.05, archimedes / 18, np.cbrt(archimedes * rough * 10 ** (size + form)))
+    return np.asarray(np.cbrt(archimedes * rough * 10 ** (size + form)) * (dstar**3 / archimedes))
 
 
 @published(

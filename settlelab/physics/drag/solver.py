@@ -18,7 +18,7 @@ from settlelab.physics.roots import bracketed_root
 DragLaw = Callable[[FloatArray], FloatArray]
 
 _LOWEST, _HIGHEST = 1e-100, 1e8  # Reynolds numbers between which the answer is looked for
-_CRISIS = tuple(np.geomspace(1e5, 1e6, 41))  # where drag may fall as velocity rises: looked through step by step
+_CRISIS = tuple(np.geomspace(5e4, 1e6, 49))  # where drag may fall as velocity rises: looked through step by step
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -52,7 +52,7 @@ def terminal_velocity(
     """Terminal velocity at which drag balances the weight in the fluid.
 
     Everything broadcasts, so that particles, lots of Monte Carlo draws and descriptors bound into `drag` may be arrays.
-    The balance is solved to 1e-11 in ln V. Where a law with a drag crisis has several solutions between Re 1e5 and 1e6,
+    The balance is solved to 1e-11 in ln V. Where a law with a drag crisis has several solutions between Re 5e4 and 1e6,
     the slowest is taken and `several` tells it: a smooth sphere in still liquid stays on that branch as it speeds up.
 
     Parameters

@@ -66,9 +66,10 @@ def concha_almendra(reynolds: FloatArray) -> FloatArray:
 @published(
     "perry-three-piece",
     source="Perry's Chemical Engineers' Handbook, section 5, as quoted by Cutlip et al. (1997), ten problems, no. 5",
-    valid={"reynolds": (0.0, 1e6)},
+    valid={"reynolds": (0.0, 3.5e5)},
     diameter="sphere",
-    note="In four pieces: Cd jumps by 3 % at Re 0.1, 2 % at 1000 and falls by 91 % at 3.5e5, the drag crisis.",
+    note="In pieces: Cd jumps by 3 % at Re 0.1 and by 2 % at 1000, and falls at 3.5e5, the drag crisis. The piece "
+    "beyond, 0.19 - 8e4/Re, is negative at first; 0.03 stands there.",
 )
 def perry(reynolds: FloatArray) -> FloatArray:
     """Drag coefficient of a sphere as handbooks give it."""
