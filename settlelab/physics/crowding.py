@@ -6,19 +6,30 @@ entries of `CROWDING` give the exponent n of V = V_single (1 - c)^n.
 
 from __future__ import annotations
 
+from dataclasses import dataclass
+
 import numpy as np
 from numpy.typing import ArrayLike
 
 from settlelab.physics.constants import FloatArray
 from settlelab.physics.registry import Entry, Registry, find
 
-CROWDING: Registry[Entry] = Registry(Entry)
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class CrowdingMethod(Entry):
+    """An exponent of hindered settling."""
+
+    regime: str  # what it is made for
+
+
+CROWDING: Registry[CrowdingMethod] = Registry(CrowdingMethod)
 
 
 @CROWDING.published(
     "richardson-zaki-1954",
     source="Richardson & Zaki (1954), Trans. Instn Chem. Engrs 32, 35-53",
     where="eqs 33-39",
+    regime="uniform spheres",
     valid={"reynolds": (2e-4, 7e3), "ratio": (0.0, 0.04)},
     note="In pieces: the exponent jumps by 14 % at Re 200 for ratio 0.04. In sedimentation the velocity at no "
     "concentration is that of the single particle; the factor 10^(-d/D) of the paper belongs to fluidisation and is "
@@ -39,6 +50,7 @@ def richardson_zaki(reynolds: FloatArray, ratio: FloatArray) -> FloatArray:
 @CROWDING.published(
     "rowe-1987",
     source="Rowe (1987), Chem. Eng. Sci. 42, 2795-2796",
+    regime="uniform spheres",
     valid={"reynolds": (1e-3, 3e4), "concentration": (0.04, 0.55)},
     note="A smooth curve through the exponents of Richardson and Zaki; used where none is asked for.",
 )
@@ -51,6 +63,7 @@ def rowe(reynolds: FloatArray) -> FloatArray:
 @CROWDING.published(
     "garside-aldibouni-1977",
     source="Garside & Al-Dibouni (1977), Ind. Eng. Chem. Process Des. Dev. 16, 206-214",
+    regime="uniform spheres",
     valid={"reynolds": (1e-3, 3e4)},
     note="14 % above Richardson and Zaki at Re 10. The range is that of its data, from memory.",
 )
@@ -63,6 +76,7 @@ def garside_aldibouni(reynolds: FloatArray) -> FloatArray:
 @CROWDING.published(
     "difelice-1999-dilute",
     source="Di Felice (1999), Int. J. Multiphase Flow 25, 559-574",
+    regime="uniform spheres, dilute",
     valid={"reynolds": (1e-3, 1e3), "concentration": (0.0, 0.05)},
     note="For dilute suspensions, where the exponent is higher. One witness; the range in Re is ours.",
     confirmed=False,

@@ -6,8 +6,10 @@ signature, so that tables, tests and messages are all derived from it.
 
 from __future__ import annotations
 
+import ast
 import inspect
 import re
+import textwrap
 from collections.abc import Callable, Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from typing import Any, Generic, TypeVar
@@ -37,6 +39,15 @@ class Entry:
     def purpose(self) -> str:
         """What it gives, in one line: the first of the formula's docstring."""
         return (inspect.getdoc(self.formula) or "").partition("\n")[0]
+
+    @property
+    def code(self) -> str:
+        """The formula as it is computed: the body of the function, without its docstring."""
+        source = textwrap.dedent(inspect.getsource(self.formula))
+        function = ast.parse(source).body[0]
+        assert isinstance(function, ast.FunctionDef)
+        after = function.body[0].end_lineno or 0  # of the docstring, which every formula has
+        return textwrap.dedent("\n".join(source.splitlines()[after:]))
 
     @property
     def citation(self) -> str:

@@ -18,7 +18,8 @@ from settlelab.physics.roots import bracketed_root
 DragLaw = Callable[[FloatArray], FloatArray]
 
 _LOWEST, _HIGHEST = 1e-100, 1e8  # Reynolds numbers between which the answer is looked for
-_CRISIS = tuple(np.geomspace(5e4, 1e6, 49))  # where drag may fall as velocity rises: looked through step by step
+# Where drag may fall as velocity rises: looked through in steps of 2 %, and at the onset in the standard curve.
+_CRISIS = tuple(np.sort([*np.geomspace(5e4, 1e6, 151), 3.37e5]))
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)

@@ -65,7 +65,8 @@ def concha_almendra(reynolds: FloatArray) -> FloatArray:
 
 @published(
     "perry-three-piece",
-    source="Perry's Chemical Engineers' Handbook, section 5, as quoted by Cutlip et al. (1997), ten problems, no. 5",
+    source="Cutlip et al. (1997), ten problems in numerical methods, no. 5",
+    where="after Perry's Chemical Engineers' Handbook, section 5",
     valid={"reynolds": (0.0, 3.5e5)},
     diameter="sphere",
     note="In pieces: Cd jumps by 3 % at Re 0.1 and by 2 % at 1000, and falls at 3.5e5, the drag crisis. The piece "

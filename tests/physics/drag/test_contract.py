@@ -440,10 +440,8 @@ def test_arrays(method: Method) -> None:
     assert method.drag_coefficient(50, **CHIPS).shape == ()
 
 
-@pytest.mark.parametrize("method", METHODS, ids=lambda method: method.name)
+@pytest.mark.parametrize("method", [each for each in METHODS if each.needs], ids=lambda method: method.name)
 def test_wrong_shapes_are_named(method: Method) -> None:
-    if not method.needs:
-        pytest.skip("takes nothing but the Reynolds number")
     wrong = dict.fromkeys(method.needs, np.full(2, 0.8))
     with pytest.raises(ValueError, match=rf"{method.name}: arrays of these shapes do not fit together: .*\(3,\)"):
         method.drag_coefficient(np.ones(3), **wrong)
