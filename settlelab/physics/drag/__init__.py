@@ -16,6 +16,7 @@ from settlelab.physics.drag import (
     sphere_fits,
     spheres,
 )
+from settlelab.physics.drag.many import velocities_of_many
 from settlelab.physics.drag.mud import MUD, MudMethod, mud_terminal_velocity, wilson_terminal_velocity
 from settlelab.physics.drag.nonnewtonian import (
     CRITICAL_YIELD_NUMBER,
@@ -73,5 +74,6 @@ __all__ = [
     "spheres",
     "terminal_velocity",
     "usable_methods",
+    "velocities_of_many",
     "wilson_terminal_velocity",
 ]
