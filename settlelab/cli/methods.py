@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 import textwrap
 from collections.abc import Collection, Iterable, Sequence
 from pathlib import Path
@@ -75,7 +76,7 @@ def _drag_row(entry: Entry) -> tuple[str, ...] | None:
         return None
     needs = ", ".join(map(spoken, entry.needs)) or "-"
     reach = stated_range(entry, "reynolds")
-    return _starred(entry), f"d* {stated_range(entry, 'dstar')}" if reach == "-" else reach, needs, entry.citation
+    return _starred(entry), f"d* {stated_range(entry, 'dstar')}" if reach == "-" else reach, needs, _authors(entry)
 
 
 # Quantities of the ranges that the list shows, with their signs.
@@ -95,7 +96,7 @@ def _other_row(entry: Entry) -> tuple[str, ...]:
     from settlelab.physics.catalogue import made_for, stated_range
 
     ranges = [f"{sign}{stated_range(entry, key)}" for key, sign in _BRIEF.items() if key in entry.valid]
-    return _starred(entry), made_for(entry), ", ".join(ranges[:2]), entry.citation
+    return _starred(entry), made_for(entry), ", ".join(ranges[:2]), _authors(entry)
 
 
 def _show_in_full(name: str) -> None:
@@ -164,6 +165,11 @@ def _remedy(method: Method, known: Collection[str]) -> str:
     columns = ", ".join(map(spoken, measured))
     derived = len(missing) == 1 and missing[0] in DERIVED
     return f"{spoken(missing[0])}; or {columns}" if derived else columns
+
+
+def _authors(entry: Entry) -> str:
+    """Authors and year, of three and more the first."""
+    return re.sub(r"^([^,(]+), [^(]+& [^(]+ \(", r"\1 et al. (", entry.citation)
 
 
 def _starred(entry: Entry) -> str:

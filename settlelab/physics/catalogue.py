@@ -100,4 +100,4 @@ def _section(entry: Entry) -> str:
 
 
 def _short(number: float) -> str:
-    return f"{number:.3g}".replace("e+0", "e")
+    return f"{number:.4g}" if 1000 <= number < 1e4 else f"{number:.3g}".replace("e+0", "e")

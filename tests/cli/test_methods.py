@@ -33,6 +33,7 @@ def test_lists_every_method_with_its_range() -> None:
     assert ganser.endswith("Ganser (1993)")
     assert all(line == line.rstrip() for line in lines)
     assert max(map(len, lines)) <= 130
+    assert any(line.endswith("Tran-Cong et al. (2004)") for line in lines)
 
 
 def test_every_law_is_on_one_board() -> None:
