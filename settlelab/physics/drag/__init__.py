@@ -1,7 +1,8 @@
 """Drag laws and terminal velocity.
 
 In: Reynolds numbers and shape descriptors, or the properties of particle and fluid. Out: drag coefficients and
-terminal velocities in unbounded fluid. `DRAG` holds the published laws; importing the modules below fills it.
+terminal velocities in unbounded fluid. `DRAG` holds the published laws, `MUD` those made for one kind of mud; importing
+the modules below fills them.
 """
 
 from __future__ import annotations
