@@ -96,7 +96,7 @@ def reference_page() -> str:
 
 def _section(entry: Entry) -> str:
     lines = "\n".join(f"- **{label}**: {text}" for label, text in facts(entry))
-    return f"### {entry.name}\n\n{entry.purpose}\n\n{lines}\n\n```python\n{entry.code}\n```"
+    return f"### {entry.name}\n\n{entry.purpose}\n\n{lines}\n\n```text\n{entry.code}\n```"
 
 
 def _short(number: float) -> str:

@@ -134,3 +134,31 @@ def readings_of_the_fall(shear_rate: ArrayLike, velocity: ArrayLike, diameter: A
     floor = below.max() if below.size else -np.inf
     ceiling = above.min() if above.size else np.inf
     return np.asarray((rate >= min(floor, rate.max())) & (rate <= max(ceiling, rate.min())))
+
+
+def true_shear_rates(shear_rate: ArrayLike, shear_stress: ArrayLike) -> FloatArray:
+    """Shear rates at the bob of R1B1 in a fluid that is not Newtonian, from the nominal rates of the readings.
+
+    Parameters
+    ----------
+    shear_rate : (N,) array
+        Nominal, 1.7023 per rpm [1/s], rising; two and more.
+    shear_stress : (N,) array
+        [Pa], above 0.
+
+    Returns
+    -------
+    (N,) array
+        Nominal rate times `shear_rate_correction` at the slope of ln stress against ln rate there [1/s]: exact for a
+        power law, to be fitted by `flow_curve.fit_rheology` instead of the nominal rates.
+
+    Raises
+    ------
+    ValueError
+        Fewer than two readings, rates that do not rise, or stresses not above 0.
+    """
+    rate, stress = (np.asarray(item, dtype=np.float64) for item in (shear_rate, shear_stress))
+    if rate.size < 2 or np.any(np.diff(rate) <= 0) or np.any(rate <= 0) or np.any(stress <= 0):
+        raise ValueError("two and more readings are needed, at rising shear rates and with stresses above 0")
+    slope = np.gradient(np.log(stress), np.log(rate))
+    return np.asarray(rate * shear_rate_correction(np.clip(slope, 0.05, 1.5)))

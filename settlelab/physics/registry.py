@@ -42,12 +42,10 @@ class Entry:
 
     @property
     def code(self) -> str:
-        """The formula as it is computed: the body of the function, without its docstring."""
-        source = textwrap.dedent(inspect.getsource(self.formula))
-        function = ast.parse(source).body[0]
-        assert isinstance(function, ast.FunctionDef)
-        after = function.body[0].end_lineno or 0  # of the docstring, which every formula has
-        return textwrap.dedent("\n".join(source.splitlines()[after:]))
+        """The formula as it is computed: the body of the function, and functions of the room that it calls."""
+        _, body = _without_docstring(self.formula)
+        helpers = [part for helper in _helpers(self.formula) for part in ("", *_without_docstring(helper))]
+        return "\n".join([textwrap.dedent(body), *helpers])
 
     @property
     def citation(self) -> str:
@@ -99,6 +97,29 @@ class Entry:
         except ValueError:
             shapes = ", ".join(f"{name} {value.shape}" for name, value in inputs.items())
             raise ValueError(f"{self.name}: arrays of these shapes do not fit together: {shapes}") from None
+
+
+def _without_docstring(function: Formula) -> tuple[str, str]:
+    """Head and body of a function as source, decorators left out."""
+    source = textwrap.dedent(inspect.getsource(function))
+    tree = ast.parse(source).body[0]
+    assert isinstance(tree, ast.FunctionDef)
+    first, lines = tree.body[0], source.splitlines()
+    described = isinstance(first, ast.Expr) and isinstance(first.value, ast.Constant)
+    start = (first.end_lineno or 0) if described else first.lineno - 1
+    return "\n".join(lines[tree.lineno - 1 : first.lineno - 1]), "\n".join(lines[start:])
+
+
+def _helpers(formula: Formula) -> list[Formula]:
+    """Functions of this package that a formula calls, each once, callers before the called."""
+    found: dict[str, Formula] = {}
+    names = list(formula.__code__.co_names)
+    for name in names:
+        helper = formula.__globals__.get(name)
+        if name not in found and inspect.isfunction(helper) and helper.__module__.startswith("settlelab."):
+            found[name] = helper
+            found |= {inner.__name__: inner for inner in _helpers(helper) if inner.__name__ not in found}
+    return list(found.values())
 
 
 E = TypeVar("E", bound=Entry)
