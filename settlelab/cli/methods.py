@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 import textwrap
 from collections.abc import Collection, Iterable, Sequence
 from pathlib import Path
@@ -10,15 +11,13 @@ from typing import TYPE_CHECKING
 import click
 
 from settlelab.cli import console
+from settlelab.errors import SettlelabError
 
 if TYPE_CHECKING:
     from settlelab.physics.drag import Method
-    from settlelab.physics.liquids import LiquidProperty
     from settlelab.physics.registry import Entry
-    from settlelab.physics.walls import WallMethod
 
 _WIDTH = 100
-_ABSOLUTE_ZERO = 273.15  # K in 0 °C, for showing ranges
 
 
 @click.command("methods")
@@ -29,83 +28,110 @@ _ABSOLUTE_ZERO = 273.15  # K in 0 °C, for showing ranges
     type=click.Path(path_type=Path, exists=True, dir_okay=False),
     help="A particle or drop table: which drag laws its columns allow, and why the others are left out.",
 )
-def command(name: str | None, table: Path | None) -> None:
+@click.option("--plot", type=click.Path(path_type=Path, dir_okay=False), help="Picture of the drag law NAME (PNG).")
+@click.option(
+    "--page", type=click.Path(path_type=Path, dir_okay=False), help="Write all methods in full as a page (Markdown)."
+)
+def command(name: str | None, table: Path | None, plot: Path | None, page: Path | None) -> None:
     """List the published methods on board. With NAME, one of them in full."""
-    if name is not None and table is not None:
-        raise click.UsageError("give either a method or --for, not both")
+    if sum(asked is not None for asked in (name, table, page)) > 1:
+        raise click.UsageError("give only one of a method, --for and --page")
+    if plot is not None and name is None:
+        raise click.UsageError("--plot needs the name of a drag law")
     if table is not None:
         _show_usable(table)
+    elif page is not None:
+        _write_page(page)
     elif name is not None:
         _show_in_full(name)
+        if plot is not None:
+            _draw(name, plot)
     else:
         _show_all()
 
 
 def _show_all() -> None:
-    from settlelab.physics.drag import DRAG
-    from settlelab.physics.liquids import LIQUIDS
-    from settlelab.physics.walls import WALLS
+    from settlelab.physics.catalogue import BOARDS, UNCONFIRMED
 
-    click.echo("Drag laws\n")
-    _aligned([_DRAG_HEAD, *map(_drag_row, DRAG.values())])
-    click.echo("\nWall factors of a round column\n")
-    _aligned([("name", "made for", "diameter/bore", "Re", "source"), *map(_wall_row, WALLS.values())])
-    click.echo("\nLiquids\n")
-    head = ("name", "gives", "temperature", "standard uncertainty", "source")
-    _aligned([head, *map(_liquid_row, LIQUIDS.values())])
-    click.echo("\n* from memory or a single source, unconfirmed")
+    for title, board in BOARDS.items():
+        click.echo(f"{title}\n")
+        entries = list(board.values())
+        rows = [_drag_row(entry) or _other_row(entry) for entry in entries]
+        _aligned([_DRAG_HEAD if _drag_row(entries[0]) else _OTHER_HEAD, *rows])
+        click.echo()
+    click.echo(f"* {UNCONFIRMED}")
     click.echo("settlelab methods NAME shows one in full; a law outside its range still answers, and is marked.")
 
 
-_DRAG_HEAD = ("name", "for", "needs", "Re", "source")
+_DRAG_HEAD = ("name", "Re", "needs", "source")
+_OTHER_HEAD = ("name", "for", "range", "source")
 
 
-def _drag_row(method: Method) -> tuple[str, ...]:
-    use = "spheres" if method.diameter == "sphere" else "grains"
-    needs = ", ".join(map(_spoken, method.needs)) or "-"
-    return _starred(method), use, needs, _range(method, "reynolds"), method.citation
+def _drag_row(entry: Entry) -> tuple[str, ...] | None:
+    """Columns of a drag law; None for another method."""
+    from settlelab.physics.catalogue import spoken, stated_range
+    from settlelab.physics.drag import Method
+
+    if not isinstance(entry, Method):
+        return None
+    needs = ", ".join(map(spoken, entry.needs)) or "-"
+    reach = stated_range(entry, "reynolds")
+    return _starred(entry), f"d* {stated_range(entry, 'dstar')}" if reach == "-" else reach, needs, _authors(entry)
 
 
-def _wall_row(method: WallMethod) -> tuple[str, ...]:
-    return (
-        _starred(method),
-        method.regime,
-        _range(method, "ratio"),
-        _range(method, "reynolds_unbounded"),
-        method.citation,
-    )
+# Quantities of the ranges that the list shows, with their signs.
+_BRIEF = {
+    "ratio": "d/D ",
+    "reynolds_unbounded": "Re ",
+    "reynolds": "Re ",
+    "nearness": "nearness ",
+    "side_ratio": "d/W ",
+    "temperature": "",
+    "bingham": "Bi ",
+    "flow_index": "n ",
+}
 
 
-def _liquid_row(entry: LiquidProperty) -> tuple[str, ...]:
-    gives = f"{entry.quantity} of {entry.liquid}"
-    return _starred(entry), gives, _range(entry, "temperature"), f"{100 * entry.relative_u:.2g} %", entry.citation
+def _other_row(entry: Entry) -> tuple[str, ...]:
+    from settlelab.physics.catalogue import made_for, stated_range
+
+    ranges = [f"{sign}{stated_range(entry, key)}" for key, sign in _BRIEF.items() if key in entry.valid]
+    return _starred(entry), made_for(entry), ", ".join(ranges[:2]), _authors(entry)
 
 
 def _show_in_full(name: str) -> None:
-    from settlelab.physics.drag import DESCRIPTORS, DRAG
-    from settlelab.physics.liquids import LIQUIDS
+    from settlelab.physics.catalogue import BOARDS, facts
     from settlelab.physics.registry import find
-    from settlelab.physics.walls import WALLS
 
-    entry = find(name, DRAG, WALLS, LIQUIDS)
+    entry = find(name, *BOARDS.values())
     click.echo(textwrap.fill(f"{entry.name}: {entry.purpose}", _WIDTH) + "\n")
-    ranges = [f"{_spoken(quantity)} {_range(entry, quantity)}" for quantity in entry.valid]
-    facts = [("source", entry.source), ("as in", entry.where)]
-    if name in DRAG:
-        method = DRAG[name]
-        facts += [("diameter", f"{method.diameter}: Re and Cd are built on it")]
-        facts += [("needs", f"{_spoken(need)}: {DESCRIPTORS[need]}") for need in method.needs]
-    if name in LIQUIDS:
-        facts += [("accuracy", f"{100 * LIQUIDS[name].relative_u:.2g} % standard uncertainty")]
-    witness = "checked against a second source" if entry.confirmed else "from memory or a single source, unconfirmed"
-    facts += [("range", "; ".join(ranges)), ("note", entry.note), ("evidence", witness)]
-    for label, text in facts:
-        if text:
-            body = textwrap.wrap(text, _WIDTH - 12)
-            click.echo("\n".join(f"  {label if i == 0 else '':10}{line}" for i, line in enumerate(body)))
+    for label, text in facts(entry):
+        body = textwrap.wrap(text, _WIDTH - 12)
+        click.echo("\n".join(f"  {label if i == 0 else '':10}{line}" for i, line in enumerate(body)))
+    click.echo("\n" + textwrap.indent(entry.code, "    "))
+
+
+def _draw(name: str, path: Path) -> None:
+    from settlelab.physics.drag import DRAG
+
+    if name not in DRAG:
+        raise SettlelabError(f"only drag laws are drawn, and {name} is none")
+    from settlelab.cli.method_chart import law_chart
+    from settlelab.report import drawing
+
+    path.write_bytes(drawing.picture(law_chart(DRAG[name]), "png"))
+    console.written([path])
+
+
+def _write_page(path: Path) -> None:
+    from settlelab.physics.catalogue import reference_page
+
+    path.write_text(reference_page(), encoding="utf-8", newline="\n")
+    console.written([path])
 
 
 def _show_usable(path: Path) -> None:
+    from settlelab.physics.catalogue import spoken
     from settlelab.physics.drag import DRAG, available_descriptors, usable_methods
     from settlelab.study import read_table
 
@@ -113,14 +139,16 @@ def _show_usable(path: Path) -> None:
     filled = [column.name for column in table.columns if any(column.cells) and not column.is_uncertainty]
     known = available_descriptors(filled)
     usable, left_out = usable_methods(known)
-    told = ", ".join(f"{_spoken(name)} ({how})" for name, how in known.items()) or "none"
+    told = ", ".join(f"{spoken(name)} ({how})" for name, how in known.items()) or "none"
     click.echo(textwrap.fill(f"{path.name}: {len(table.rows)} rows; descriptors known: {told}", _WIDTH))
-    click.echo("\nusable\n")
-    _aligned([_DRAG_HEAD, *map(_drag_row, usable)])
+    for title, spheres in (("usable, made for grains", False), ("usable, made for spheres", True)):
+        click.echo(f"\n{title}\n")
+        some = sorted((law for law in usable if (law.diameter == "sphere") == spheres), key=lambda law: law.name)
+        _aligned([_DRAG_HEAD, *filter(None, map(_drag_row, some))])
     if left_out:
         click.echo("\nleft out\n")
         rows = [
-            (_starred(DRAG[name]), " ".join(map(_spoken, reason.split())), _remedy(DRAG[name], known))
+            (_starred(DRAG[name]), " ".join(map(spoken, reason.split())), _remedy(DRAG[name], known))
             for name, reason in left_out.items()
         ]
         _aligned([("name", "because it", "columns that would give it"), *rows])
@@ -129,41 +157,23 @@ def _show_usable(path: Path) -> None:
 
 def _remedy(method: Method, known: Collection[str]) -> str:
     """Which columns would make a law usable."""
+    from settlelab.physics.catalogue import spoken
     from settlelab.physics.drag import DERIVED
 
     missing = [need for need in method.needs if need not in known]
     measured = dict.fromkeys(column for need in missing for column in DERIVED.get(need, ((need,),))[0])
-    columns = ", ".join(map(_spoken, measured))
-    return f"{_spoken(missing[0])}; or {columns}" if len(missing) == 1 else columns
+    columns = ", ".join(map(spoken, measured))
+    derived = len(missing) == 1 and missing[0] in DERIVED
+    return f"{spoken(missing[0])}; or {columns}" if derived else columns
+
+
+def _authors(entry: Entry) -> str:
+    """Authors and year, of three and more the first."""
+    return re.sub(r"^([^,(]+), [^(]+& [^(]+ \(", r"\1 et al. (", entry.citation)
 
 
 def _starred(entry: Entry) -> str:
     return entry.name if entry.confirmed else f"{entry.name} *"
-
-
-def _spoken(name: str) -> str:
-    """A parameter name as it is spoken."""
-    words = {
-        "reynolds": "Reynolds number",
-        "reynolds_unbounded": "Reynolds number in unbounded fluid",
-        "ratio": "diameter over bore",
-        "corey_shape_factor": "Corey shape factor",
-    }
-    return words.get(name, name.replace("_", " "))
-
-
-def _range(entry: Entry, quantity: str) -> str:
-    """A validity range in words: up to 800, 1 to 1e4, 0 to 40 °C."""
-    if quantity not in entry.valid:
-        return "-"
-    low, high = entry.valid[quantity]
-    if quantity == "temperature":
-        return f"{low - _ABSOLUTE_ZERO:g} to {high - _ABSOLUTE_ZERO:g} °C"
-    return f"up to {_short(high)}" if low == 0 else f"{_short(low)} to {_short(high)}"
-
-
-def _short(number: float) -> str:
-    return f"{number:.4g}".replace("e+0", "e")
 
 
 def _aligned(rows: Iterable[Sequence[str]]) -> None:

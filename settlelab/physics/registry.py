@@ -6,8 +6,10 @@ signature, so that tables, tests and messages are all derived from it.
 
 from __future__ import annotations
 
+import ast
 import inspect
 import re
+import textwrap
 from collections.abc import Callable, Iterable, Iterator, Mapping
 from dataclasses import dataclass
 from typing import Any, Generic, TypeVar
@@ -39,6 +41,13 @@ class Entry:
         return (inspect.getdoc(self.formula) or "").partition("\n")[0]
 
     @property
+    def code(self) -> str:
+        """The formula as it is computed: the body of the function, and functions of the room that it calls."""
+        _, body = _without_docstring(self.formula)
+        helpers = [part for helper in _helpers(self.formula) for part in ("", *_without_docstring(helper))]
+        return "\n".join([textwrap.dedent(body), *helpers])
+
+    @property
     def citation(self) -> str:
         """Authors and year."""
         return re.split(r"(?<=\d\)),", self.source)[0]
@@ -54,9 +63,11 @@ class Entry:
         Raises
         ------
         ValueError
-            An input that the formula needs was not given.
+            An input that the formula needs was not given, or arrays whose shapes do not fit together.
         """
-        return np.asarray(self.formula(**self._taken(self.parameters, inputs)), dtype=np.float64)
+        taken = self._taken(self.parameters, inputs)
+        self._common_shape(taken)
+        return np.asarray(self.formula(**taken), dtype=np.float64)
 
     def within(self, **inputs: ArrayLike) -> BoolArray:
         """Where every range that the source states is kept; an unknown (nan) input does not keep it.
@@ -69,7 +80,7 @@ class Entry:
             An input of the formula, or a quantity with a stated range, was not given.
         """
         known = self._taken({**dict.fromkeys(self.parameters), **dict.fromkeys(self.valid)}, inputs)
-        inside = np.ones(np.broadcast_shapes(*(value.shape for value in known.values())), dtype=np.bool_)
+        inside = np.ones(self._common_shape(known), dtype=np.bool_)
         for name, (low, high) in self.valid.items():
             inside = inside & (known[name] >= low) & (known[name] <= high)
         return inside
@@ -79,6 +90,36 @@ class Entry:
         if missing:
             raise ValueError(f"{self.name} needs {' and '.join(missing)}")
         return {name: np.asarray(inputs[name], dtype=np.float64) for name in names}
+
+    def _common_shape(self, inputs: Mapping[str, FloatArray]) -> tuple[int, ...]:
+        try:
+            return np.broadcast_shapes(*(value.shape for value in inputs.values()))
+        except ValueError:
+            shapes = ", ".join(f"{name} {value.shape}" for name, value in inputs.items())
+            raise ValueError(f"{self.name}: arrays of these shapes do not fit together: {shapes}") from None
+
+
+def _without_docstring(function: Formula) -> tuple[str, str]:
+    """Head and body of a function as source, decorators left out."""
+    source = textwrap.dedent(inspect.getsource(function))
+    tree = ast.parse(source).body[0]
+    assert isinstance(tree, ast.FunctionDef)
+    first, lines = tree.body[0], source.splitlines()
+    described = isinstance(first, ast.Expr) and isinstance(first.value, ast.Constant)
+    start = (first.end_lineno or 0) if described else first.lineno - 1
+    return "\n".join(lines[tree.lineno - 1 : first.lineno - 1]), "\n".join(lines[start:])
+
+
+def _helpers(formula: Formula) -> list[Formula]:
+    """Functions of this package that a formula calls, each once, callers before the called."""
+    found: dict[str, Formula] = {}
+    names = list(formula.__code__.co_names)
+    for name in names:
+        helper = formula.__globals__.get(name)
+        if name not in found and inspect.isfunction(helper) and helper.__module__.startswith("settlelab."):
+            found[name] = helper
+            found |= {inner.__name__: inner for inner in _helpers(helper) if inner.__name__ not in found}
+    return list(found.values())
 
 
 E = TypeVar("E", bound=Entry)

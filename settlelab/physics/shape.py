@@ -49,7 +49,7 @@ def diameter_from_axes(long: ArrayLike, intermediate: ArrayLike, short: ArrayLik
     ValueError
         Axes out of order, or not above 0.
     """
-    a, b, c = _axes(long, intermediate, short)
+    a, b, c = ordered_axes(long, intermediate, short)
     return np.cbrt(a * b * c)
 
 
@@ -113,7 +113,7 @@ def corey_shape_factor(long: ArrayLike, intermediate: ArrayLike, short: ArrayLik
     ValueError
         Axes out of order, or not above 0.
     """
-    a, b, c = _axes(long, intermediate, short)
+    a, b, c = ordered_axes(long, intermediate, short)
     return np.asarray(c / np.sqrt(a * b))
 
 
@@ -135,7 +135,7 @@ def flatness(intermediate: ArrayLike, short: ArrayLike) -> FloatArray:
     ValueError
         Axes out of order, or not above 0.
     """
-    _, b, c = _axes(intermediate, intermediate, short)
+    _, b, c = ordered_axes(intermediate, intermediate, short)
     return np.asarray(c / b)
 
 
@@ -157,7 +157,7 @@ def elongation(long: ArrayLike, intermediate: ArrayLike) -> FloatArray:
     ValueError
         Axes out of order, or not above 0.
     """
-    a, b, _ = _axes(long, intermediate, intermediate)
+    a, b, _ = ordered_axes(long, intermediate, intermediate)
     return np.asarray(b / a)
 
 
@@ -183,7 +183,7 @@ def ellipsoid_surface(long: ArrayLike, intermediate: ArrayLike, short: ArrayLike
     ----------
     Carlson's symmetric integral R_G: NIST Digital Library of Mathematical Functions, 19.33.
     """
-    a, b, c = (axis / 2 for axis in _axes(long, intermediate, short))
+    a, b, c = (axis / 2 for axis in ordered_axes(long, intermediate, short))
     return np.asarray(4 * np.pi * elliprg((a * b) ** 2, (a * c) ** 2, (b * c) ** 2))
 
 
@@ -251,7 +251,10 @@ def circularity(area: ArrayLike, perimeter: ArrayLike) -> FloatArray:
     return np.asarray(np.sqrt(4 * np.pi * area) / perimeter)
 
 
-def _axes(long: ArrayLike, intermediate: ArrayLike, short: ArrayLike) -> tuple[FloatArray, FloatArray, FloatArray]:
+def ordered_axes(
+    long: ArrayLike, intermediate: ArrayLike, short: ArrayLike
+) -> tuple[FloatArray, FloatArray, FloatArray]:
+    """The axes as arrays; a ValueError where they are not above 0 and in order."""
     a, b, c = (np.asarray(axis, dtype=np.float64) for axis in (long, intermediate, short))
     if np.any(a < b) or np.any(b < c) or np.any(c <= 0):
         raise ValueError("axes must be above 0 and in order: long, intermediate, short")

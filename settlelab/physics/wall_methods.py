@@ -25,7 +25,7 @@ class WallMethod(Entry):
 WALLS: Registry[WallMethod] = Registry(WallMethod)
 
 _CREEPING = (0.0, 0.1)
-_COMPUTED = "reference sheet of settlelab"
+COMPUTED = "Computed for settlelab (2025), unpublished"
 
 
 @WALLS.published(
@@ -67,8 +67,8 @@ def bohlin(ratio: FloatArray) -> FloatArray:
     where="rational form for a sphere moving in a liquid at rest",
     regime="creeping flow",
     valid={"ratio": (0.0, 0.6), "reynolds_unbounded": _CREEPING},
-    note="Its drag is 0.3 % low at ratio 0.4, 1.3 % at 0.5, 4.5 % at 0.6 and 34 % at 0.8, though it is often quoted as "
-    "valid to there.",
+    note="Its drag is 0.3 % low at ratio 0.4, 1.3 % at 0.5, 4.5 % at 0.6 and 34 % at 0.8, though it is often quoted "
+    "as valid to there.",
 )
 def haberman_sayre(ratio: FloatArray) -> FloatArray:
     """Wall factor in creeping flow by a rational function."""
@@ -84,7 +84,7 @@ _tube_spline = CubicSpline(_TUBE_RATIO, np.log(_TUBE_DRAG), bc_type=((1, 2.10444
 
 @WALLS.published(
     "tube-creeping",
-    source=_COMPUTED,
+    source=COMPUTED,
     where="computed: multipole and Fourier-Bessel solution of the flow about a sphere in a tube",
     regime="creeping flow",
     valid={"ratio": (0.0, 0.8), "reynolds_unbounded": _CREEPING},
@@ -103,8 +103,8 @@ def tube_creeping(ratio: FloatArray) -> FloatArray:
     source="Kehlenbeck & Di Felice (1999), Chem. Eng. Technol. 22, 303",
     regime="intermediate Reynolds number",
     valid={"reynolds_unbounded": (2.0, 185.0), "ratio": (0.0, 0.9)},
-    note="From memory, but its two branches meet at Re 35, and it agrees with computed values within 7 % to ratio 0.3; "
-    "at 0.5 it is 13 % high at Re 1 and 9 % low at Re 100.",
+    note="From memory, but its two branches meet at Re 35, and it agrees with computed values within 7 % to ratio "
+    "0.3; at 0.5 it is 13 % high at Re 1 and 9 % low at Re 100.",
     confirmed=False,
 )
 def kehlenbeck_difelice(ratio: FloatArray, reynolds_unbounded: FloatArray) -> FloatArray:
@@ -146,7 +146,7 @@ def _between_rows(rows: FloatArray, position: FloatArray, nodes: tuple[float, ..
 
 @WALLS.published(
     "tube-finite-reynolds",
-    source=_COMPUTED,
+    source=COMPUTED,
     where="computed: axisymmetric finite elements, Navier-Stokes equations",
     regime="intermediate Reynolds number",
     valid={"reynolds_unbounded": (0.3, 150.0), "ratio": (0.0, 0.5)},
@@ -188,12 +188,12 @@ _power_splines = CubicSpline(_POWER_RATIO, np.transpose(_POWER))
 
 @WALLS.published(
     "tube-power-law",
-    source=_COMPUTED,
+    source=COMPUTED,
     where="computed: axisymmetric finite elements, creeping flow",
     regime="creeping flow, power law",
     valid={"flow_index": (0.3, 1.0), "ratio": (0.0, 0.5), "reynolds_unbounded": _CREEPING},
-    note="Cubic in the ratio, linear in the flow index; absolute error 0.002. A flow index outside takes the value at "
-    "the nearest end; beyond ratio 0.5 it is a power of the Newtonian value.",
+    note="Cubic in the ratio, linear in the flow index; absolute error 0.002. A flow index outside takes the value "
+    "at the nearest end; beyond ratio 0.5 it is a power of the Newtonian value.",
 )
 def tube_power_law(ratio: FloatArray, flow_index: FloatArray) -> FloatArray:
     """Wall factor in creeping power-law flow, computed."""

@@ -13,8 +13,10 @@ import numpy as np
 from numpy.typing import ArrayLike, NDArray
 from scipy.interpolate import PchipInterpolator
 
+from settlelab.physics import wall_fits
 from settlelab.physics.constants import FloatArray
 from settlelab.physics.drag.nonnewtonian import generalised_reynolds
+from settlelab.physics.registry import find
 from settlelab.physics.rheology import Rheology
 from settlelab.physics.roots import bracketed_root
 from settlelab.physics.wall_methods import (
@@ -28,7 +30,7 @@ from settlelab.physics.wall_methods import (
     tube_power_law,
 )
 
-__all__ = ["WALLS", "WallFactor", "WallMethod", "equivalent_bore", "unbounded_velocity", "wall_factor"]
+__all__ = ["WALLS", "WallFactor", "WallMethod", "equivalent_bore", "unbounded_velocity", "wall_factor", "wall_fits"]
 
 # The end of creeping flow, and the stretch between the computed table and the Newton regime.
 _CREEPING_END, _TABLE_END, _NEWTON_START = 0.3, 150.0, 1000.0
@@ -45,7 +47,9 @@ class WallFactor:
     method: NDArray[np.str_]
 
 
-def wall_factor(ratio: ArrayLike, reynolds_unbounded: ArrayLike, *, flow_index: ArrayLike = 1.0) -> WallFactor:
+def wall_factor(
+    ratio: ArrayLike, reynolds_unbounded: ArrayLike, *, flow_index: ArrayLike = 1.0, method: str | None = None
+) -> WallFactor:
     """Velocity in a round column over velocity in unbounded fluid, by the regime of the fall.
 
     Newtonian: the exact creeping solution at Re 0, going over linearly into the computed table at Re 0.3; the table to
@@ -68,6 +72,9 @@ def wall_factor(ratio: ArrayLike, reynolds_unbounded: ArrayLike, *, flow_index: 
         Generalised Reynolds number of the fall in unbounded fluid [-].
     flow_index : (N,) array
         n of the fluid [-].
+    method : str, optional
+        A name in `WALLS` to be used instead of this choice by regime, whether in its range or not. Its difference from
+        the choice, as a rectangular distribution, is added to the uncertainty.
 
     Returns
     -------
@@ -78,6 +85,8 @@ def wall_factor(ratio: ArrayLike, reynolds_unbounded: ArrayLike, *, flow_index: 
     ------
     ValueError
         A ratio below 0, or of 1 and more: the particle would not fit.
+    SettlelabError
+        An unknown method.
 
     References
     ----------
@@ -103,7 +112,20 @@ def wall_factor(ratio: ArrayLike, reynolds_unbounded: ArrayLike, *, flow_index: 
     )
     u = np.sqrt(sum((np.square(doubt) for doubt in doubts), start=np.zeros_like(ratio)))
     none = ratio == 0
-    return WallFactor(factor=np.where(none, 1.0, 1 - loss), u=np.where(none, 0.0, u), method=_names(ratio, reynolds, n))
+    chain = WallFactor(
+        factor=np.where(none, 1.0, 1 - loss), u=np.where(none, 0.0, u), method=_names(ratio, reynolds, n)
+    )
+    return chain if method is None else _overruled(chain, method, ratio, reynolds, n)
+
+
+def _overruled(
+    chain: WallFactor, method: str, ratio: FloatArray, reynolds: FloatArray, flow_index: FloatArray
+) -> WallFactor:
+    """The factor by a method that was asked for, its difference from the chain taken as a doubt."""
+    entry = find(method, WALLS)
+    factor = entry.evaluate(ratio=ratio, reynolds_unbounded=reynolds, flow_index=flow_index)
+    u = np.hypot(chain.u, (factor - chain.factor) / np.sqrt(12))
+    return WallFactor(factor=factor, u=u, method=np.where(np.isnan(factor), "", entry.name))
 
 
 def _newtonian(ratio: FloatArray, reynolds: FloatArray) -> tuple[FloatArray, FloatArray]:
@@ -133,7 +155,13 @@ def _names(ratio: FloatArray, reynolds: FloatArray, flow_index: FloatArray) -> N
 
 
 def unbounded_velocity(
-    velocity: ArrayLike, *, diameter: ArrayLike, bore: ArrayLike, fluid_density: ArrayLike, rheology: Rheology
+    velocity: ArrayLike,
+    *,
+    diameter: ArrayLike,
+    bore: ArrayLike,
+    fluid_density: ArrayLike,
+    rheology: Rheology,
+    method: str | None = None,
 ) -> tuple[FloatArray, WallFactor]:
     """Velocity that a particle would have without walls, from its velocity in a column.
 
@@ -152,6 +180,8 @@ def unbounded_velocity(
         Density of the fluid [kg/m3].
     rheology : Rheology
         Flow curve of the fluid.
+    method : str, optional
+        As in `wall_factor`.
 
     Returns
     -------
@@ -164,6 +194,8 @@ def unbounded_velocity(
     ------
     ValueError
         A particle not smaller than the column.
+    SettlelabError
+        An unknown method.
     """
     inputs = (velocity, diameter, bore, fluid_density, *rheology.arrays())
     v, d, width, rho, consistency, n, tau0 = np.broadcast_arrays(*(np.asarray(x, dtype=np.float64) for x in inputs))
@@ -174,12 +206,12 @@ def unbounded_velocity(
     def factor_at(log_unbounded: FloatArray) -> WallFactor:
         unbounded = np.exp(log_unbounded)
         reynolds = generalised_reynolds(unbounded, diameter=d, fluid_density=rho, rheology=fluid)
-        return wall_factor(ratio, reynolds, flow_index=n)
+        return wall_factor(ratio, reynolds, flow_index=n, method=method)
 
     def excess(log_unbounded: FloatArray) -> FloatArray:
         return log_unbounded + np.log(factor_at(log_unbounded).factor) - np.log(speed)
 
-    slowest = wall_factor(ratio, 0.0, flow_index=n).factor
+    slowest = wall_factor(ratio, 0.0, flow_index=n, method=method).factor
     log_unbounded = bracketed_root(excess, np.log(speed) - 1e-9, np.log(speed) - np.log(slowest) + 1e-9)
     unbounded = np.where(v == 0, 0.0, np.sign(v) * np.exp(log_unbounded))
     return unbounded, factor_at(np.where(v == 0, -np.inf, log_unbounded))

@@ -8,7 +8,7 @@ from pathlib import Path
 import pytest
 
 PUBLISHED = Path(__file__).parents[1] / "published"
-WORDS = ("method", "law", "quantity", "kind", "source")
+WORDS = ("method", "law", "quantity", "kind", "confirmed", "source")
 
 
 def published(name: str) -> list[dict[str, str]]:

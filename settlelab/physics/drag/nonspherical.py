@@ -71,7 +71,8 @@ def ganser_factors(sphericity: FloatArray) -> tuple[FloatArray, FloatArray]:
     return k_stokes, k_newton
 
 
-def _ganser_base(reynolds: FloatArray) -> FloatArray:
+def ganser_base(reynolds: FloatArray) -> FloatArray:
+    """Sphere law of Ganser (1993), eq. 18."""
     return 24 / reynolds * (1 + 0.1118 * reynolds**0.6567) + 0.4305 / (1 + 3305 / reynolds)
 
 
@@ -83,12 +84,12 @@ def _ganser_base(reynolds: FloatArray) -> FloatArray:
     diameter="volume-equivalent",
     note="The wall term of K1 (-2.25 d/D) is left out: walls are corrected for apart, and never twice. The logarithm "
     "in K2 is to base 10. The limit Re K1 K2 <= 1e5 stands here as Re <= 2.5e4, which keeps it down to sphericity "
-    "0.67, that of the least round isometric body. At sphericity 1 it lies 15 to 26 % below the standard sphere curve "
-    "at Re 10 to 1000.",
+    "0.67, that of the least round isometric body. At sphericity 1 it lies 15 to 26 % below the standard sphere "
+    "curve at Re 10 to 1000.",
 )
 def ganser(reynolds: FloatArray, sphericity: FloatArray) -> FloatArray:
     """Drag coefficient of an isometric particle by sphericity: Stokes and Newton shape factors."""
-    return scaled_drag(reynolds, *ganser_factors(sphericity), _ganser_base)
+    return scaled_drag(reynolds, *ganser_factors(sphericity), ganser_base)
 
 
 @published(
@@ -129,8 +130,8 @@ def swamee_ojha(reynolds: FloatArray, corey_shape_factor: FloatArray) -> FloatAr
     where="as given in course texts, after Pettyjohn & Christiansen (1948)",
     valid={"reynolds": (0.0, 5e4), "sphericity": (0.65, 1.0)},
     diameter="volume-equivalent",
-    note="Joins the creeping and Newton ends of Pettyjohn and Christiansen by a sum of powers. The constants have two "
-    "witnesses; the citation is from memory.",
+    note="Joins the creeping and Newton ends of Pettyjohn and Christiansen by a sum of powers. The constants have "
+    "two witnesses; the citation is from memory.",
 )
 def coelho_massarani(reynolds: FloatArray, sphericity: FloatArray) -> FloatArray:
     """Drag coefficient of isometric particles by sphericity, with the true limits at both ends."""
@@ -161,20 +162,27 @@ def wu_wang(reynolds: FloatArray, corey_shape_factor: FloatArray) -> FloatArray:
     where="random orientation, volume taken as that of the ellipsoid of the three axes",
     valid={"reynolds": (0.0, 3e5)},
     diameter="volume-equivalent",
-    note="Irregular volcanic particles in air and liquids. Its exponents are read as exp(2.5 log r) + 30 and "
-    "exp(3 log r) + 100: with the constants inside the exponential, as typeset, they would not depend on r. Logarithms "
-    "to base 10. For a sphere it is 11 to 18 % low at Re 10 to 1000.",
+    note="Irregular volcanic particles in air and liquids. Its exponents are read as exp(2.5 log r) + 30 and exp(3 "
+    "log r) + 100: with the constants inside the exponential, as typeset, they would not depend on r. Logarithms to "
+    "base 10. For a sphere it is 11 to 18 % low at Re 10 to 1000.",
 )
 def bagheri_bonadonna(
     reynolds: FloatArray, flatness: FloatArray, elongation: FloatArray, density_ratio: FloatArray
 ) -> FloatArray:
     """Drag coefficient of irregular particles by flatness, elongation and density ratio."""
-    form_stokes = flatness * elongation**1.3
-    form_newton = np.minimum(flatness**2 * elongation, 1.0)
-    drag_stokes = (form_stokes ** (1 / 3) + form_stokes ** (-1 / 3)) / 2
-    a = 0.45 + 10 / (np.exp(2.5 * np.log10(density_ratio)) + 30)
-    b = 1 - 37 / (np.exp(3 * np.log10(density_ratio)) + 100)
-    drag_newton = 10 ** (a * (-np.log10(form_newton)) ** b)
+    drag_stokes, drag_newton = bagheri_bonadonna_factors(flatness, elongation, density_ratio)
     scaled = reynolds * drag_newton / drag_stokes
     viscous = 24 * drag_stokes / reynolds * (1 + 0.125 * scaled ** (2 / 3))
     return np.asarray(viscous + 0.46 * drag_newton / (1 + 5330 / scaled))
+
+
+def bagheri_bonadonna_factors(
+    flatness: FloatArray, elongation: FloatArray, density_ratio: FloatArray
+) -> tuple[FloatArray, FloatArray]:
+    """Drag over that of the sphere in creeping flow and at high Re, kS and kN (2016), in random orientation."""
+    form_stokes = flatness * elongation**1.3
+    form_newton = np.minimum(flatness**2 * elongation, 1.0)
+    a = 0.45 + 10 / (np.exp(2.5 * np.log10(density_ratio)) + 30)
+    b = 1 - 37 / (np.exp(3 * np.log10(density_ratio)) + 100)
+    drag_stokes = (form_stokes ** (1 / 3) + form_stokes ** (-1 / 3)) / 2
+    return np.asarray(drag_stokes), np.asarray(10 ** (a * (-np.log10(form_newton)) ** b))

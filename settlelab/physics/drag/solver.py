@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
+from functools import partial
+from typing import Protocol
 
 import numpy as np
 from numpy.typing import ArrayLike
@@ -15,7 +17,9 @@ from settlelab.physics.roots import bracketed_root
 
 DragLaw = Callable[[FloatArray], FloatArray]
 
-_LOWEST, _CRISIS, _HIGHEST = 1e-100, 3.37e5, 1e8  # Reynolds numbers between which the answer is looked for
+_LOWEST, _HIGHEST = 1e-100, 1e8  # Reynolds numbers between which the answer is looked for
+# Where drag may fall as velocity rises: looked through in steps of 2 %, and at the onset in the standard curve.
+_CRISIS = tuple(np.sort([*np.geomspace(5e4, 1e6, 151), 3.37e5]))
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -26,6 +30,7 @@ class Settling:
     reynolds: FloatArray  # generalised, rho V d / mu(V/d)
     drag_coefficient: FloatArray  # on the cross-section of the equivalent sphere; nan where nothing moves
     held: BoolArray  # the yield stress holds the particle still
+    several: BoolArray  # the law has a drag crisis here, and faster balances than the one given
 
 
 def drag_in_fluid(
@@ -48,7 +53,8 @@ def terminal_velocity(
     """Terminal velocity at which drag balances the weight in the fluid.
 
     Everything broadcasts, so that particles, lots of Monte Carlo draws and descriptors bound into `drag` may be arrays.
-    The balance is solved to 1e-11 in ln V. Where a law with a drag crisis has several solutions, the slowest is taken.
+    The balance is solved to 1e-11 in ln V. Where a law with a drag crisis has several solutions between Re 5e4 and 1e6,
+    the slowest is taken and `several` tells it: a smooth sphere in still liquid stays on that branch as it speeds up.
 
     Parameters
     ----------
@@ -75,7 +81,33 @@ def terminal_velocity(
     ValueError
         A diameter or a density of 0 and less, a flow index of 2 and more.
     """
-    inputs = (diameter, particle_density, fluid_density, *rheology.arrays())
+    return balance(
+        partial(drag_in_fluid, drag),
+        diameter=diameter,
+        densities=(particle_density, fluid_density),
+        rheology=rheology,
+        gravity=gravity,
+    )
+
+
+class DragAt(Protocol):
+    """Drag coefficient at a velocity in a fluid."""
+
+    def __call__(
+        self, velocity: FloatArray, *, diameter: FloatArray, fluid_density: FloatArray, rheology: Rheology
+    ) -> FloatArray: ...
+
+
+def balance(
+    drag_at: DragAt,
+    *,
+    diameter: ArrayLike,
+    densities: tuple[ArrayLike, ArrayLike],
+    rheology: Rheology,
+    gravity: float,
+) -> Settling:
+    """The steady fall at which drag balances weight, for any law of drag by velocity; see `terminal_velocity`."""
+    inputs = (diameter, *densities, *rheology.arrays())
     d, rho_s, rho, consistency, n, tau0 = np.broadcast_arrays(*(np.asarray(item, dtype=np.float64) for item in inputs))
     if np.any(d <= 0) or np.any(rho <= 0) or np.any(rho_s <= 0):
         raise ValueError("diameters and densities must be above 0")
@@ -87,31 +119,42 @@ def terminal_velocity(
 
     def excess(log_velocity: FloatArray) -> FloatArray:
         velocity = np.exp(log_velocity)
-        cd = drag_in_fluid(drag, velocity, diameter=d, fluid_density=rho, rheology=fluid)
+        cd = drag_at(velocity, diameter=d, fluid_density=rho, rheology=fluid)
         return np.log(cd) + 2 * log_velocity - np.log(weight)
 
-    speed = np.exp(_lowest_root(excess, d, rho, fluid))
-    speed = np.where(stopped | (rho_s == rho), 0.0, speed)
+    log_speed, several = _lowest_root(excess, d, rho, fluid)
+    speed = np.where(stopped | (rho_s == rho), 0.0, np.exp(log_speed))
     return Settling(
         velocity=np.where(rho_s < rho, 0.0 - speed, speed),
         reynolds=generalised_reynolds(speed, diameter=d, fluid_density=rho, rheology=fluid),
         drag_coefficient=np.asarray(weight / np.where(speed > 0, speed, np.nan) ** 2),
         held=np.asarray(stopped),
+        several=several,
     )
 
 
 def _lowest_root(
     excess: Callable[[FloatArray], FloatArray], diameter: FloatArray, fluid_density: FloatArray, fluid: Rheology
-) -> FloatArray:
-    """Log velocity of the slowest balance: below the onset of the drag crisis if there is one, else above."""
+) -> tuple[FloatArray, BoolArray]:
+    """Log velocity of the slowest balance, and whether there are others."""
     consistency, n, _ = fluid.arrays()
 
     def log_velocity(reynolds: float) -> FloatArray:
-        return np.log(reynolds * consistency / (fluid_density * diameter**n)) / (2 - n)
+        return np.asarray(np.log(reynolds * consistency / (fluid_density * diameter**n)) / (2 - n))
 
-    lowest, crisis, highest = (log_velocity(reynolds) for reynolds in (_LOWEST, _CRISIS, _HIGHEST))
-    below = excess(crisis) >= 0
-    return bracketed_root(excess, np.where(below, lowest, crisis), np.where(below, crisis, highest))
+    low, high = log_velocity(_LOWEST), log_velocity(_CRISIS[0])
+    found = ~(excess(high) < 0)  # unknown ones are not looked for any further
+    several = np.zeros_like(found)
+    if np.all(found):
+        return bracketed_root(excess, low, high), several
+    for reynolds in _CRISIS[1:]:
+        here = log_velocity(reynolds)
+        enough = ~(excess(here) < 0)
+        several |= found & ~enough
+        low, high = np.where(found, low, high), np.where(found, high, here)
+        found = found | enough
+    low, high = np.where(found, low, high), np.where(found, high, log_velocity(_HIGHEST))
+    return bracketed_root(excess, low, high), several
 
 
 def drag_coefficient_from_velocity(

@@ -14,6 +14,11 @@ from settlelab.physics.drag import DRAG, terminal_velocity
 from settlelab.physics.rheology import Rheology
 
 SAME = {
+    "almedeij-2008": fluids.drag.Almedeij,
+    "barati-2014-eq22": fluids.drag.Barati,
+    "barati-2014-eq23": fluids.drag.Barati_high,
+    "brown-lawler-2003-turton-levenspiel": fluids.drag.Clift_Gauvin,  # under another name there, see above
+    "brown-lawler-2003-khan-richardson": fluids.drag.Khan_Richardson,
     "stokes-1851": fluids.drag.Stokes,
     "clift-grace-weber-1978": fluids.drag.Clift,
     "haider-levenspiel-1989-sphere": fluids.drag.Haider_Levenspiel,
@@ -38,6 +43,19 @@ def test_name_without_its_constants() -> None:
     """`Clift_Gauvin` of the package is the Brown-Lawler re-fit: 2 % from ours at Re 1, the reference sheet says."""
     ours = DRAG["clift-gauvin-1971"].drag_coefficient(1.0)
     assert abs(fluids.drag.Clift_Gauvin(1.0) / ours - 1) > 1e-3
+
+
+def test_morsi_alexander() -> None:
+    reynolds = np.geomspace(0.003, 4.9e4, 300)
+    theirs = [fluids.drag.Morsi_Alexander(re) for re in reynolds]
+    assert DRAG["morsi-alexander-1972"].drag_coefficient(reynolds) == pytest.approx(theirs, rel=1e-12)
+
+
+@pytest.mark.parametrize(("sphericity", "projected"), [(0.8, 1 / 0.9), (0.6, 1.3)])
+def test_song(sphericity: float, projected: float) -> None:
+    theirs = [fluids.drag.Song_Xu(re, sphericity=sphericity, S=1 / projected) for re in (0.01, 1.0, 90.0)]
+    ours = DRAG["song-2017"].drag_coefficient([0.01, 1.0, 90.0], sphericity=sphericity, projected_area_ratio=projected)
+    assert ours == pytest.approx(theirs, rel=1e-12)
 
 
 @pytest.mark.parametrize(

@@ -267,3 +267,45 @@ def test_generalised_reynolds() -> None:
     reynolds = generalised_reynolds([0.1, -0.1, 0.0, np.nan], diameter=5e-3, fluid_density=1100, rheology=mud)
     by_hand = 1100 * 0.1**1.4 * 5e-3**0.6 / 0.8  # rho V^(2-n) d^n / K
     assert reynolds == pytest.approx([by_hand, by_hand, 0.0, np.nan], rel=1e-12, nan_ok=True)
+
+
+@pytest.mark.parametrize("name", ["almedeij-2008", "barati-2014-eq23", "clift-grace-weber-1978", "perry-three-piece"])
+def test_drag_crisis_gives_the_slowest_balance_and_tells_of_others(name: str) -> None:
+    """Against a plain scan: every sign change of Cd Re^2 - 4/3 Ar on a fine grid of Reynolds numbers."""
+    law = DRAG[name].drag_coefficient
+    reynolds = np.geomspace(1e4, 2e6, 200_000)
+    product = law(reynolds) * reynolds**2
+    for archimedes in np.geomspace(2e9, 3e10, 12):
+        crossings = reynolds[1:][np.diff(np.sign(product - 4 / 3 * archimedes)) != 0]
+        settling = terminal_velocity(
+            law, diameter=1e-2, particle_density=2000, fluid_density=1000, rheology=_viscosity(archimedes), gravity=1.0
+        )
+        assert settling.reynolds == pytest.approx(crossings[0], rel=1e-4)
+        gap = (
+            crossings.size > 1
+            and product[np.searchsorted(reynolds, crossings[0]) + 1 :].min()
+            < 0.9 * product[np.searchsorted(reynolds, crossings[0])]
+        )
+        if gap:  # wide enough for the steps of the search
+            assert settling.several
+
+
+def test_ordinary_falls_have_one_balance() -> None:
+    settling = terminal_velocity(
+        DRAG["clift-grace-weber-1978"].drag_coefficient,
+        diameter=[1e-4, 5e-3, 2e-2, np.nan],
+        particle_density=2650,
+        fluid_density=1000,
+        rheology=WATER,
+    )
+    assert settling.several.tolist() == [False] * 4
+
+
+def test_jump_of_a_law_in_pieces() -> None:
+    """moore-1974 falls by 5 % at Re 3: weights between its two branches balance on one of them, or at the jump."""
+    law = DRAG["moore-1974"].drag_coefficient
+    for archimedes in (85.0, 88.0, 92.0):
+        settling = terminal_velocity(
+            law, diameter=1e-2, particle_density=2000, fluid_density=1000, rheology=_viscosity(archimedes), gravity=1.0
+        )
+        assert 2.8 < settling.reynolds < 3.2
