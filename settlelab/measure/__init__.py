@@ -10,13 +10,15 @@ from settlelab.measure.controls import chain_verdict, e_n
 from settlelab.measure.drops import measure_study
 from settlelab.measure.falls import measure_falls, track_table
 from settlelab.measure.fluids import FluidState, fluid_state
-from settlelab.measure.model import Drop, Measured, TrackPoint, Velocity
+from settlelab.measure.lots import scatter_of
+from settlelab.measure.model import Drop, Measured, Scatter, TrackPoint, Velocity
 from settlelab.measure.velocity import terminal_velocity
 
 __all__ = [
     "Drop",
     "FluidState",
     "Measured",
+    "Scatter",
     "TrackPoint",
     "Velocity",
     "chain_verdict",
@@ -24,6 +26,7 @@ __all__ = [
     "fluid_state",
     "measure_falls",
     "measure_study",
+    "scatter_of",
     "terminal_velocity",
     "track_table",
 ]

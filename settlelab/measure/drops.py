@@ -14,6 +14,7 @@ from settlelab.measure.chain import Fallen, Setup, bore_of, fallen
 from settlelab.measure.controls import CONTROL_COLUMNS, chain_verdict, compare_control
 from settlelab.measure.falls import View, drop_table, judged, row_of, view_of
 from settlelab.measure.fluids import FluidState, fluid_state
+from settlelab.measure.lots import scatter_of
 from settlelab.measure.model import Drop, Measured
 from settlelab.measure.particle import Grain, grain_of
 from settlelab.physics.constants import STANDARD_GRAVITY
@@ -98,12 +99,16 @@ def measure_study(study: Study, recordings: Sequence[TrackedRecording]) -> Measu
     controls = pd.DataFrame(tables.controls, columns=list(CONTROL_COLUMNS)).astype({"passed": bool})
     if not controls["passed"].all():
         tables.doubts.append(chain_verdict(controls))
+    drops = drop_table(tables.drops)
+    scatter = scatter_of(drops)
+    tables.note((), scatter.told if scatter is not None else ())
     return Measured(
-        drops=drop_table(tables.drops),
+        drops=drops,
         budget=pd.DataFrame(tables.budget, columns=["drop", "output", "input", "share"]).astype({"share": float}),
         controls=controls,
         assumed=tuple(dict.fromkeys(tables.assumed)),
         doubts=tuple(dict.fromkeys(tables.doubts)),
+        scatter=scatter,
     )
 
 

@@ -17,6 +17,7 @@ from settlelab.report.calibrated import calibration_view
 from settlelab.report.lab import lab_table
 from settlelab.report.origin import origin
 from settlelab.report.pictures import save_charts, save_overlays
+from settlelab.report.scatter import scatter_view
 from settlelab.report.verdict import findings
 from settlelab.study.model import Study
 from settlelab.video.model import TrackedRecording
@@ -134,6 +135,7 @@ def _tables(
         "calibration": calibration_view(calibration) if calibration else None,
         "controls": sections.controls_view(measured.controls, system) if len(measured.controls) else None,
         "budget": sections.budget_view(shares) if len(shares) else None,
+        "scatter": scatter_view(measured.scatter) if measured.scatter is not None else None,
         "drops": sections.drops_view(drops, system) if len(drops) else None,
         "fluids": sections.fluids_view(study, drops, system),
         "recordings": sections.recordings_view(study, tracked, system),

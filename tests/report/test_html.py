@@ -14,7 +14,7 @@ from settlelab.study.model import ReportChoice
 from tests.report.invented import calibration_of, drop, invented_drops, measured_of, study_of, tracked_of
 
 SECTIONS = ("glance", "lab-table", "overlays", "drag", "predictions", "ranking", "calibration", "controls", "budget")
-SECTIONS += ("drops", "setup", "origin", "cautions", "provenance")
+SECTIONS += ("repeatability", "drops", "setup", "origin", "cautions", "provenance")
 VOID = {"meta", "img", "br", "link"}
 
 
