@@ -20,12 +20,15 @@ from settlelab.physics.walls import wall_factor
 __all__ = [
     "CONTROL_COLUMNS",
     "Comparison",
+    "ControlDrop",
     "Law",
     "chain_verdict",
     "compare_control",
     "e_n",
     "expected_velocity",
+    "inputs_of",
     "sphere_law",
+    "velocity_in_column",
 ]
 
 LAW = "cheng-2009"
@@ -106,15 +109,8 @@ def expected_velocity(particle: Grain, setup: Setup, law: Law | None = None) -> 
         That of a sphere where left out.
     """
     law = law or sphere_law(setup.fluid)
-    inputs = {
-        "diameter": particle.diameter,
-        "particle_density": particle.density,
-        "bore": setup.bore.diameter,
-        **setup.fluid.properties,
-        "wall_doubt": 0.0,
-        "law": 1.0,
-    }
-    _, wall_u = _expected(law.drag, {name: np.asarray([value]) for name, value in inputs.items()})
+    inputs = inputs_of(particle, setup)
+    _, wall_u = velocity_in_column(law.drag, {name: np.asarray([value]) for name, value in inputs.items()})
     effects = (
         *particle.effects,
         *setup.fluid.effects,
@@ -122,11 +118,23 @@ def expected_velocity(particle: Grain, setup: Setup, law: Law | None = None) -> 
         Effect("walls", {"wall_doubt": float(wall_u[0])}),
         Effect("drag law", {"law": law.u}),
     )
-    return propagate(lambda moved: {"velocity": _expected(law.drag, moved)[0]}, inputs, effects)["velocity"]
+    return propagate(lambda moved: {"velocity": velocity_in_column(law.drag, moved)[0]}, inputs, effects)["velocity"]
 
 
-def _expected(drag: DragLaw, inputs: Mapping[str, FloatArray]) -> tuple[FloatArray, FloatArray]:
-    """Velocity in the column, and the standard uncertainty of the wall factor in it."""
+def inputs_of(particle: Grain, setup: Setup) -> dict[str, float]:
+    """Best values of all that an expected velocity depends on; `law` multiplies the drag coefficient."""
+    return {
+        "diameter": particle.diameter,
+        "particle_density": particle.density,
+        "bore": setup.bore.diameter,
+        **setup.fluid.properties,
+        "wall_doubt": 0.0,
+        "law": 1.0,
+    }
+
+
+def velocity_in_column(drag: DragLaw, inputs: Mapping[str, FloatArray]) -> tuple[FloatArray, FloatArray]:
+    """Velocity in the column, and the standard uncertainty of the wall factor in it; (M,) arrays of `inputs_of`."""
     rheology = flow_curve(inputs)
     unbounded = terminal_velocity(
         lambda reynolds: drag(reynolds) * inputs["law"],
@@ -137,6 +145,19 @@ def _expected(drag: DragLaw, inputs: Mapping[str, FloatArray]) -> tuple[FloatArr
     )
     wall = wall_factor(inputs["diameter"] / inputs["bore"], unbounded.reynolds, flow_index=rheology.flow_index)
     return unbounded.velocity * (wall.factor + inputs["wall_doubt"]), wall.u
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class ControlDrop:
+    """An accepted drop of a control sphere."""
+
+    recording: str
+    particle: str
+    sphere: Grain
+    setup: Setup
+    track_u: float  # m/s, uncertainty of the fit alone
+    seen_diameter: float  # m, of its silhouette
+    comparison: Comparison
 
 
 def compare_control(sphere: Grain, setup: Setup, result: Fallen) -> Comparison:

@@ -31,6 +31,7 @@ LOT_COLUMNS = (
 )
 MARK_COLUMNS = ("lot", "fluid", "particle", "drop", "test", "statistic", "critical", "mark")
 TREND_COLUMNS = ("fluid", "drops", "per_drop", "per_drop_u", "p_value")
+ALL = "all"
 FEWEST_PARTICLES = 4  # for a test on particles of a lot, which differ in size as well
 
 
@@ -52,7 +53,8 @@ def scatter_of(drops: pd.DataFrame) -> Scatter | None:
     if used.empty:
         return None
     used = used.assign(log_velocity=np.log(used["unbounded_velocity"].to_numpy(dtype=np.float64)))
-    lots = pd.DataFrame([_lot_row(*names, part) for names, part in _by(used)], columns=list(LOT_COLUMNS))
+    rows = [_lot_row(*names, part) for names, part in _by(used)]
+    lots = pd.DataFrame(rows + _pooled(used, rows), columns=list(LOT_COLUMNS))
     marks = pd.DataFrame(
         [mark for names, part in _by(used) for mark in _marks(*names, part)], columns=list(MARK_COLUMNS)
     )
@@ -82,6 +84,16 @@ def _lot_row(lot: str, fluid: str, part: pd.DataFrame) -> dict[str, object]:
         "f_ratio": found.f_ratio,
         "p_value": found.p_value,
     }
+
+
+def _pooled(used: pd.DataFrame, rows: list[dict[str, object]]) -> list[dict[str, object]]:
+    """A row on the repeatability of all lots and fluids together, where there are several and some replicates."""
+    found = one_way(used["log_velocity"], pd.factorize(used["particle"] + "\0" + used["fluid"])[0])
+    if len(rows) < 2 or not math.isfinite(found.within):
+        return []
+    unknown = dict.fromkeys(("between", "mean_u", "f_ratio", "p_value"), math.nan)
+    place = {"lot": ALL, "fluid": ALL, "particles": found.groups, "drops": found.count}
+    return [place | {"within": found.within, "repeatability_limit": found.repeatability_limit} | unknown]
 
 
 def _marks(lot: str, fluid: str, part: pd.DataFrame) -> Iterator[dict[str, object]]:

@@ -104,7 +104,7 @@ class TrackPoint:
 class Scatter:
     """How drops repeat and particles differ, relative to the velocity; see `lots`."""
 
-    lots: pd.DataFrame  # a row per lot and fluid: within and between particles, repeatability limit, F ratio
+    lots: pd.DataFrame  # a row per lot and fluid, one for all together: scatter within and between particles, ...
     marks: pd.DataFrame  # outliers (1 %) and stragglers (5 %); none was removed
     trends: pd.DataFrame  # a row per fluid with replicates: change of velocity per drop, in order of release
     told: tuple[str, ...]  # what of it a reader must know, one sentence each
@@ -122,3 +122,4 @@ class Measured:
     assumed: tuple[str, ...]  # one sentence each
     doubts: tuple[str, ...]  # e.g. falls that do not match the names of a recording
     scatter: Scatter | None = None  # None where no cutting was accepted
+    viscosities: pd.DataFrame | None = None  # by control spheres, a row per Newtonian fluid; see `viscosity`

@@ -129,11 +129,15 @@ def _tables(
     """Every table of the page; None where there is nothing to show."""
     system, drops = study.report.units, measured.drops
     shares = sections.budget_shares(measured)
+    viscosities = measured.viscosities
     return {
         "lab": sections.lab_view(lab_table(measured, calibration), system),
         "ranking": sections.ranking_view(calibration) if calibration else None,
         "calibration": calibration_view(calibration) if calibration else None,
         "controls": sections.controls_view(measured.controls, system) if len(measured.controls) else None,
+        "viscosities": sections.viscosities_view(viscosities, system)
+        if viscosities is not None and len(viscosities)
+        else None,
         "budget": sections.budget_view(shares) if len(shares) else None,
         "scatter": scatter_view(measured.scatter) if measured.scatter is not None else None,
         "drops": sections.drops_view(drops, system) if len(drops) else None,

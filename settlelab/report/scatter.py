@@ -80,7 +80,7 @@ def scatter_view(scatter: Scatter) -> ScatterView:
         per_drop_u_percent=100 * scatter.trends["per_drop_u"].astype(np.float64),
     )
     return ScatterView(
-        lots=table_view(scatter.lots, LOTS),
+        lots=table_view(scatter.lots, LOTS, kind=lambda row: "lot" if row["lot"] == "all" else ""),
         marks=table_view(scatter.marks, MARKS) if len(scatter.marks) else None,
         trends=table_view(trends, TRENDS) if len(trends) else None,
         replicated=bool((scatter.lots["drops"] > scatter.lots["particles"]).any()),

@@ -86,10 +86,23 @@ def test_refused_drops_and_control_spheres_have_no_part() -> None:
 
 
 def test_fluids_and_lots_stand_apart() -> None:
-    drops = pd.concat([drop_table(), drop_table().assign(fluid="water"), drop_table().assign(lot="B")])
+    drops = pd.concat(
+        [
+            drop_table(),
+            drop_table(within=0.02).assign(fluid="water"),
+            drop_table().assign(lot="B", particle=lambda drops: "B" + drops["particle"]),
+        ]
+    )
     scatter = scatter_of(drops)
     assert scatter is not None
-    assert scatter.lots[["lot", "fluid"]].to_numpy().tolist() == [["A", "oil"], ["A", "water"], ["B", "oil"]]
+    assert scatter.lots[["lot", "fluid"]].to_numpy().tolist() == [
+        ["A", "oil"],
+        ["A", "water"],
+        ["B", "oil"],
+        ["all"] * 2,
+    ]
+    alone = scatter.lots["within"].to_numpy()
+    assert alone[3] == pytest.approx(np.sqrt(np.mean(alone[:3] ** 2)))  # equal degrees of freedom
 
 
 def test_a_measured_study_carries_it() -> None:

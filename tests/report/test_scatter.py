@@ -15,7 +15,7 @@ def test_tables_of_the_section() -> None:
     view = scatter_view(scatter)
     headings = [cell.text for cell in view.lots.headings]
     assert headings[:4] == ["lot", "fluid", "particles", "drops"]
-    assert [row[0].text for row in view.lots.rows] == ["A", "B", "C"]
+    assert [row[0].text for row in view.lots.rows] == ["A", "B", "C", "all"]
     within = headings.index("within particles, %")
     assert all(0.2 < float(row[within].text) < 4 for row in view.lots.rows)  # drawn with 1.2 %
     assert view.replicated
