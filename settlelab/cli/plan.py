@@ -16,7 +16,9 @@ PERCENT = click.FloatRange(min=0, max=100, min_open=True)
 @click.option("--target", type=PERCENT, default=5.0, show_default=True, help="U(Cd) aimed at, k = 2, %.")
 @click.option("--scatter", type=PERCENT, help="Scatter of replicate drops, % in velocity [assumed where left out].")
 @click.option(
-    "--pixels", type=click.IntRange(min=16), help="Height of the picture along gravity, px [assumed where left out]."
+    "--pixels",
+    type=click.IntRange(min=16),
+    help="Height of the picture along gravity, px [of the video if there, else assumed].",
 )
 @click.option("--out", type=click.Path(path_type=Path, file_okay=False), help="Folder for plan.md and plan.html.")
 def command(study: Path, target: float, scatter: float | None, pixels: int | None, out: Path | None) -> None:

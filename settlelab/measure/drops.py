@@ -11,10 +11,11 @@ import pandas as pd
 from settlelab.errors import SettlelabError
 from settlelab.measure.acceptance import finding
 from settlelab.measure.causes import likely_causes
-from settlelab.measure.chain import Fallen, Setup, bore_of, fallen
+from settlelab.measure.chain import Fallen, Setup, bore_of, fallen, fallen_by_monte_carlo
 from settlelab.measure.controls import CONTROL_COLUMNS, ControlDrop, chain_verdict, compare_control
 from settlelab.measure.falls import View, drop_table, judged, row_of, view_of
 from settlelab.measure.fluids import FluidState, fluid_state
+from settlelab.measure.intervals import INTERVAL_COLUMNS, compared, departures
 from settlelab.measure.lots import scatter_of
 from settlelab.measure.model import Drop, Measured
 from settlelab.measure.particle import Grain, grain_of
@@ -48,6 +49,7 @@ class _Tables:
     drops: list[dict[str, object]] = field(default_factory=list)
     budget: list[dict[str, object]] = field(default_factory=list)
     controls: list[dict[str, object]] = field(default_factory=list)
+    intervals: list[dict[str, object]] = field(default_factory=list)
     control_drops: list[ControlDrop] = field(default_factory=list)
     assumed: list[str] = field(default_factory=lambda: [GRAVITY])
     doubts: list[str] = field(default_factory=list)
@@ -104,7 +106,8 @@ def measure_study(study: Study, recordings: Sequence[TrackedRecording]) -> Measu
         tables.note((), (chain_verdict(controls), likely_causes(tables.control_drops)))
     drops = drop_table(tables.drops)
     scatter = scatter_of(drops)
-    tables.note((), scatter.told if scatter is not None else ())
+    intervals = pd.DataFrame(tables.intervals, columns=list(INTERVAL_COLUMNS))
+    tables.note((), (*(scatter.told if scatter is not None else ()), *departures(intervals)))
     return Measured(
         drops=drops,
         budget=pd.DataFrame(tables.budget, columns=["drop", "output", "input", "share"]).astype({"share": float}),
@@ -112,6 +115,7 @@ def measure_study(study: Study, recordings: Sequence[TrackedRecording]) -> Measu
         assumed=tuple(dict.fromkeys(tables.assumed)),
         doubts=tuple(dict.fromkeys(tables.doubts)),
         scatter=scatter,
+        intervals=intervals,
         viscosities=viscosity_table(tables.control_drops),
     )
 
@@ -161,6 +165,9 @@ def _add_drop(tables: _Tables, fall: _Fall, particle: Particle | None) -> None:
         tables.budget.extend(
             {"drop": number, "output": output, "input": source, "share": share} for source, share in shares.items()
         )
+    if verdict["accepted"]:
+        drawn = fallen_by_monte_carlo(view.velocity, grain, fall.setup, off_axis=view.off_axis)
+        tables.intervals.extend(compared(number, result, drawn, BUDGETED))
     if particle.control and verdict["accepted"]:
         control = _control_drop(fall, particle, grain, result, view)
         tables.control_drops.append(control)

@@ -122,4 +122,5 @@ class Measured:
     assumed: tuple[str, ...]  # one sentence each
     doubts: tuple[str, ...]  # e.g. falls that do not match the names of a recording
     scatter: Scatter | None = None  # None where no cutting was accepted
+    intervals: pd.DataFrame | None = None  # accepted drops: 95 % intervals by propagation and by Monte Carlo
     viscosities: pd.DataFrame | None = None  # by control spheres, a row per Newtonian fluid; see `viscosity`

@@ -100,7 +100,11 @@ def _walls(case: _Case) -> Verdict | None:
     if loss <= STRONG_WALL:
         return Verdict("good", "walls", f"{told}; the correction is good.")
     wider = _wide_enough(case.diameter(worst), worst.reynolds, case.situation)
-    change = f"a column {1e3 * wider:.0f} mm wide brings that to {100 * STRONG_WALL:.0f} %" if wider else "change fluid"
+    change = (
+        f"a column {1e3 * wider:.0f} mm wide brings that to {100 * STRONG_WALL:.0f} %"
+        if wider
+        else "no column would do, change the fluid"
+    )
     return Verdict("bad" if loss > TOO_STRONG_WALL else "doubt", "walls", f"{told}: {change}.")
 
 

@@ -7,13 +7,15 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from settlelab.errors import RecordingError
 from settlelab.measure.falls import silhouette_wander
 from settlelab.measure.particle import Grain
-from settlelab.study.model import Camera
+from settlelab.study.model import Camera, Recording
 from settlelab.video.clock import rate_u
 from settlelab.video.optics import scale_of
+from settlelab.video.source import open_recording
 
-__all__ = ["Film", "film_of"]
+__all__ = ["Film", "film_of", "picture_height"]
 
 HEIGHT = 1080  # px along gravity, where not stated
 RATE = 30.0  # Hz, where not stated
@@ -64,6 +66,17 @@ class Film:
         wander = 0.0 if grain.diameter_from == "typed" else silhouette_wander(grain.diameter, circularity)
         noise = CENTRE_U * self.metre_per_px * math.sqrt(12 / frames)
         return math.hypot(noise, wander) / distance * velocity
+
+
+def picture_height(recording: Recording) -> int | None:
+    """Pixels along gravity of a recording that is there already and opens; else None."""
+    if not recording.video.exists():
+        return None
+    try:
+        width, height = open_recording(recording.video).size
+    except RecordingError:
+        return None  # `check` tells what is wrong with it
+    return height if recording.camera.gravity in ("down", "up") else width
 
 
 def film_of(camera: Camera, height: int | None, name: str) -> Film:

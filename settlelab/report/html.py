@@ -14,6 +14,7 @@ from jinja2 import Environment, PackageLoader, StrictUndefined
 from settlelab.measure.model import Measured
 from settlelab.report import sections
 from settlelab.report.calibrated import calibration_view
+from settlelab.report.intervals import intervals_view
 from settlelab.report.lab import lab_table
 from settlelab.report.origin import origin
 from settlelab.report.pictures import save_charts, save_overlays
@@ -129,7 +130,7 @@ def _tables(
     """Every table of the page; None where there is nothing to show."""
     system, drops = study.report.units, measured.drops
     shares = sections.budget_shares(measured)
-    viscosities = measured.viscosities
+    viscosities, intervals = measured.viscosities, measured.intervals
     return {
         "lab": sections.lab_view(lab_table(measured, calibration), system),
         "ranking": sections.ranking_view(calibration) if calibration else None,
@@ -138,6 +139,7 @@ def _tables(
         "viscosities": sections.viscosities_view(viscosities, system)
         if viscosities is not None and len(viscosities)
         else None,
+        "intervals": intervals_view(intervals) if intervals is not None and len(intervals) else None,
         "budget": sections.budget_view(shares) if len(shares) else None,
         "scatter": scatter_view(measured.scatter) if measured.scatter is not None else None,
         "drops": sections.drops_view(drops, system) if len(drops) else None,

@@ -10,7 +10,7 @@ import pytest
 
 from settlelab.measure import measure_study
 from settlelab.plan import Aims, plan_study
-from settlelab.simulate import Camera, Column, Order, draw_order
+from settlelab.simulate import Camera, Column, Order, draw_order, random_study
 from settlelab.study import read_study
 from settlelab.video import follow_falls
 
@@ -37,6 +37,7 @@ def both(request: pytest.FixtureRequest, tmp_path_factory: pytest.TempPathFactor
     tracked = follow_falls(recording.video, camera=recording.camera, column=recording.column)
     measured = measure_study(study, [tracked]).drops
     assert measured["accepted"].all()
+    assert not any("px along gravity" in told for told in plan_study(study).assumed)  # the video tells
     return measured.merge(plan.setups[0].rows, on="particle", suffixes=("", "_planned"), validate="many_to_one")
 
 
@@ -56,3 +57,19 @@ def test_size_and_frames_in_view(both: pd.DataFrame) -> None:
     assert np.allclose(both["size_px"], size, rtol=0.2)  # a silhouette shows more than the equal sphere
     expected = both["frames_planned"] * both["velocity_planned"] / both["velocity"]
     assert np.allclose(both["frames"], expected, rtol=0.3)  # the steady window is a part of the view
+
+
+@pytest.mark.slow
+@pytest.mark.parametrize("seed", range(21, 25))
+def test_on_studies_drawn_at_random(seed: int, tmp_path: Path) -> None:
+    random_study(tmp_path, seed, recordings=2, drops=2)
+    study = read_study(tmp_path)
+    tracked = [follow_falls(each.video, camera=each.camera, column=each.column) for each in study.recordings]
+    drops = measure_study(study, tracked).drops
+    planned = pd.concat(
+        [setup.rows.assign(recording=name) for setup in plan_study(study).setups for name in setup.recordings]
+    )
+    both = drops[drops["accepted"]].merge(planned, on=["recording", "particle"], suffixes=("", "_planned"))
+    assert len(both) == len(drops)
+    test_velocity_lies_within_its_stated_interval(both)
+    test_uncertainty_of_the_drag_coefficient_within_a_factor_of_one_and_a_half(both)
