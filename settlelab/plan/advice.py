@@ -5,6 +5,7 @@ from __future__ import annotations
 import math
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
+from typing import Literal
 
 import numpy as np
 
@@ -21,6 +22,7 @@ STRONG_WALL, TOO_STRONG_WALL = 0.10, 0.30  # loss of velocity to the wall
 SMALL, TOO_SMALL = 10.0, 5.0  # px: below, the silhouette says little of size, or is lost among specks
 BLURRED = 0.25  # of the size; more is flagged `blurred`
 FEW_FRAMES = 20.0  # below, a swing or an approach to terminal velocity cannot be told from noise
+LOST, TOO_LOST = 0.3, 0.6  # of the view, before terminal velocity is reached
 LONG_WAIT = 300.0  # s
 IMPROVE = {
     "scale": "two marks further apart in the plane of fall",
@@ -126,15 +128,15 @@ def _run_up(case: _Case) -> Verdict | None:
     height, bore, view = case.situation.column.height, case.situation.setup.bore.diameter, case.situation.film.view
     if height is None or not math.isfinite(view) or math.isinf(bore):
         return Verdict("good", "run-up", f"{told}: release that far above the view or further.")
-    room = height.value - bore - view  # the view ends one bore above the bottom
-    if room >= worst.run_up_distance:
-        return Verdict("good", "run-up", f"{told}; there is room for {1e3 * room:.0f} mm above the view.")
-    return Verdict(
-        "bad",
-        "run-up",
-        f"{told}; above a view that ends one bore over the bottom there are only {1e3 * max(room, 0):.0f} mm: "
-        "a taller column, a lower view, or a thicker fluid.",
-    )
+    path = max(height.value - bore, 0.0)  # the last bore above the bottom is not measured
+    seen, steady = min(view, path), max(path - worst.run_up_distance, 0.0)
+    if steady >= seen:
+        return Verdict("good", "run-up", f"{told}; released at the top, the fall is steady in the whole view.")
+    told = f"{told}; released at the top, the fall is steady over {1e3 * steady:.0f} of {1e3 * seen:.0f} mm in view"
+    if steady >= (1 - LOST) * seen:
+        return Verdict("good", "run-up", f"{told}.")
+    mark: Literal["doubt", "bad"] = "doubt" if steady >= (1 - TOO_LOST) * seen else "bad"
+    return Verdict(mark, "run-up", f"{told}: a taller column, a lower view, or a thicker fluid.")
 
 
 def _size(case: _Case) -> Verdict | None:

@@ -4,18 +4,19 @@ from __future__ import annotations
 
 import math
 from dataclasses import dataclass
+from pathlib import Path
 
 import numpy as np
 
 from settlelab.errors import RecordingError
 from settlelab.measure.falls import silhouette_wander
 from settlelab.measure.particle import Grain
-from settlelab.study.model import Camera, Recording
+from settlelab.study.model import Recording
 from settlelab.video.clock import rate_u
 from settlelab.video.optics import scale_of
 from settlelab.video.source import open_recording
 
-__all__ = ["Film", "film_of", "picture_height"]
+__all__ = ["Film", "film_of"]
 
 HEIGHT = 1080  # px along gravity, where not stated
 RATE = 30.0  # Hz, where not stated
@@ -33,12 +34,13 @@ class Film:
     frame_rate: float  # Hz
     exposure: float  # s
     height: int  # px along gravity
+    column_height: float  # m; infinite where not stated
     assumed: tuple[str, ...]
 
     @property
     def view(self) -> float:
-        """Height of the view [m]."""
-        return self.height * self.metre_per_px
+        """Height of what is seen of the column [m]."""
+        return min(self.height * self.metre_per_px, self.column_height) if self.metre_per_px > 0 else math.nan
 
     def size(self, diameter: float) -> float:
         """A length in the picture [px]."""
@@ -68,7 +70,7 @@ class Film:
         return math.hypot(noise, wander) / distance * velocity
 
 
-def picture_height(recording: Recording) -> int | None:
+def _picture_height(recording: Recording) -> int | None:
     """Pixels along gravity of a recording that is there already and opens; else None."""
     if not recording.video.exists():
         return None
@@ -79,19 +81,19 @@ def picture_height(recording: Recording) -> int | None:
     return height if recording.camera.gravity in ("down", "up") else width
 
 
-def film_of(camera: Camera, height: int | None, name: str) -> Film:
+def film_of(recording: Recording, height: int | None) -> Film:
     """A camera before filming, with what had to be assumed of it.
 
     Parameters
     ----------
-    camera : Camera
+    recording : Recording
         As typed. Scale by graduation or checkerboard is unknown until there is a picture.
     height : int, optional
-        Pixels of the picture along gravity; 1080 are assumed where left out.
-    name : str
-        The recording, for messages.
+        Pixels of the picture along gravity; where left out that of the video, if there is one, else 1080 are assumed.
     """
     assumed = []
+    camera, name = recording.camera, Path(recording.name).name
+    height = height or _picture_height(recording)
     known = camera.metre_per_px is not None or (camera.marks is not None and camera.marks_apart is not None)
     scale, scale_u = math.nan, 0.0
     if known:
@@ -108,5 +110,6 @@ def film_of(camera: Camera, height: int | None, name: str) -> Film:
         frame_rate=camera.frame_rate.value if camera.frame_rate is not None else RATE,
         exposure=camera.exposure.value if camera.exposure is not None else math.nan,
         height=height or HEIGHT,
+        column_height=recording.column.height.value if recording.column.height is not None else math.inf,
         assumed=tuple(assumed),
     )

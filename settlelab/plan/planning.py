@@ -13,7 +13,7 @@ from settlelab.measure.drops import GRAVITY
 from settlelab.measure.fluids import fluid_state
 from settlelab.measure.particle import Grain, grain_of
 from settlelab.plan.advice import verdicts
-from settlelab.plan.film import film_of, picture_height
+from settlelab.plan.film import film_of
 from settlelab.plan.laws import GRAIN_SCATTER
 from settlelab.plan.model import Aims, Plan, Planned, SetupPlan
 from settlelab.plan.situation import SCATTER, Situation, planned
@@ -55,7 +55,7 @@ def plan_study(study: Study, aims: Aims | None = None) -> Plan:
     setups = []
     for recordings in _alike(study):
         first = recordings[0]
-        film = film_of(first.camera, aims.picture_height or picture_height(first), Path(first.name).name)
+        film = film_of(first, aims.picture_height)
         state = states[first.fluid.name]
         dropped = list(dict.fromkeys(name for recording in recordings for name in recording.particles))
         setup = Setup(scale_u=film.scale_u, clock_u=film.clock_u, bore=bore_of(first.column), fluid=state)

@@ -95,11 +95,24 @@ def test_too_small_in_the_picture_and_what_scale_would_do() -> None:
     assert "0.060 mm/px" in text(plan, "size")
 
 
-def test_no_room_above_the_view() -> None:
-    low = replace(WIDE, height=Quantity(0.6))
-    plan = planned(sphere(4e-3), fluid=WATER, column=low, picture_height=1400)
-    assert marks(plan)["run-up"] == "bad"
-    assert marks(planned(sphere(4e-3), fluid=WATER, column=replace(low, height=Quantity(2.0))))["run-up"] == "good"
+@pytest.mark.parametrize(("height", "mark"), [(2.0, "good"), (0.75, "doubt"), (0.6, "bad")])
+def test_steady_part_of_the_view(height: float, mark: str) -> None:
+    column = replace(WIDE, height=Quantity(height))
+    plan = planned(sphere(4e-3), fluid=WATER, column=column, picture_height=2500)
+    row = plan.setups[0].rows.iloc[0]
+    path = height - 0.3  # the last bore above the bottom
+    steady, seen = path - row["run_up_distance"], min(0.5, path)
+    expected = "good" if steady > 0.7 * seen else "doubt" if steady > 0.4 * seen else "bad"
+    assert expected == mark  # the cases are what they are meant to be
+    assert marks(plan)["run-up"] == mark
+    if mark != "good":
+        assert f"steady over {1e3 * steady:.0f} of {1e3 * seen:.0f} mm" in text(plan, "run-up")
+
+
+def test_no_more_is_seen_than_the_column_is_high() -> None:
+    plan = planned(sphere(4e-3), column=replace(WIDE, height=Quantity(0.35)), picture_height=2500)
+    row = plan.setups[0].rows.iloc[0]
+    assert row["frames"] == pytest.approx((0.35 - 0.004) / row["velocity"] * 60)
 
 
 def test_more_drops_for_a_closer_target_until_none_would_do() -> None:
