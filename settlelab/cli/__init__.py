@@ -12,6 +12,7 @@ from settlelab.errors import SettlelabError
 COMMANDS = {
     "new": "new",
     "check": "check",
+    "plan": "plan",
     "track": "track",
     "run": "run",
     "calibrate": "calibrate",

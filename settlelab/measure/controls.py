@@ -10,14 +10,26 @@ import numpy as np
 import pandas as pd
 
 from settlelab.measure.chain import Fallen, Setup
-from settlelab.measure.fluids import flow_curve
+from settlelab.measure.fluids import FluidState, flow_curve
 from settlelab.measure.particle import Grain
 from settlelab.measure.propagation import Effect, Estimate, propagate
 from settlelab.physics.constants import FloatArray
-from settlelab.physics.drag import DRAG, terminal_velocity
+from settlelab.physics.drag import DRAG, DragLaw, terminal_velocity
 from settlelab.physics.walls import wall_factor
 
-__all__ = ["CONTROL_COLUMNS", "Comparison", "chain_verdict", "compare_control", "e_n", "expected_velocity"]
+__all__ = [
+    "CONTROL_COLUMNS",
+    "Comparison",
+    "ControlDrop",
+    "Law",
+    "chain_verdict",
+    "compare_control",
+    "e_n",
+    "expected_velocity",
+    "inputs_of",
+    "sphere_law",
+    "velocity_in_column",
+]
 
 LAW = "cheng-2009"
 # Relative standard uncertainty of its drag coefficient: the good laws for spheres spread by 5 % (k = 2) from Re 0.01 to
@@ -67,44 +79,65 @@ def e_n(value: float, reference: float, expanded_u: float, expanded_u_reference:
     return (value - reference) / math.hypot(expanded_u, expanded_u_reference)
 
 
-def expected_velocity(sphere: Grain, setup: Setup) -> Estimate:
-    """Velocity [m/s] in the column of a sphere of known size and density, by the standard drag curve and wall factor.
+@dataclass(frozen=True, slots=True)
+class Law:
+    """Reynolds number to drag coefficient, and the relative standard uncertainty of that."""
 
-    The budget adds the source "drag law" to those of sphere, fluid and column.
+    drag: DragLaw
+    u: float
+
+
+def sphere_law(fluid: FluidState) -> Law:
+    """The standard drag curve of spheres, as sure as it is in this fluid."""
+    _, flow_index, yield_stress = fluid.rheology.arrays()
+    newtonian = flow_index == 1.0 and yield_stress == 0.0
+    return Law(DRAG[LAW].drag_coefficient, LAW_U if newtonian else LAW_U_NON_NEWTONIAN)
+
+
+def expected_velocity(particle: Grain, setup: Setup, law: Law | None = None) -> Estimate:
+    """Velocity [m/s] in the column of a particle of known size and density, by a drag law and the wall factor.
+
+    The budget adds the source "drag law" to those of particle, fluid and column.
 
     Parameters
     ----------
-    sphere : Grain
+    particle : Grain
         Diameter and density known otherwise than from the recording.
     setup : Setup
         Column and fluid; scale and clock have no part in what is expected.
+    law : Law, optional
+        That of a sphere where left out.
     """
-    inputs = {
-        "diameter": sphere.diameter,
-        "particle_density": sphere.density,
+    law = law or sphere_law(setup.fluid)
+    inputs = inputs_of(particle, setup)
+    _, wall_u = velocity_in_column(law.drag, {name: np.asarray([value]) for name, value in inputs.items()})
+    effects = (
+        *particle.effects,
+        *setup.fluid.effects,
+        *setup.bore.effects,
+        Effect("walls", {"wall_doubt": float(wall_u[0])}),
+        Effect("drag law", {"law": law.u}),
+    )
+    return propagate(lambda moved: {"velocity": velocity_in_column(law.drag, moved)[0]}, inputs, effects)["velocity"]
+
+
+def inputs_of(particle: Grain, setup: Setup) -> dict[str, float]:
+    """Best values of all that an expected velocity depends on; `law` multiplies the drag coefficient."""
+    return {
+        "diameter": particle.diameter,
+        "particle_density": particle.density,
         "bore": setup.bore.diameter,
         **setup.fluid.properties,
         "wall_doubt": 0.0,
         "law": 1.0,
     }
-    _, flow_index, yield_stress = setup.fluid.rheology.arrays()
-    newtonian = flow_index == 1.0 and yield_stress == 0.0
-    _, wall_u = _expected({name: np.asarray([value]) for name, value in inputs.items()})
-    effects = (
-        *sphere.effects,
-        *setup.fluid.effects,
-        *setup.bore.effects,
-        Effect("walls", {"wall_doubt": float(wall_u[0])}),
-        Effect("drag law", {"law": LAW_U if newtonian else LAW_U_NON_NEWTONIAN}),
-    )
-    return propagate(lambda moved: {"velocity": _expected(moved)[0]}, inputs, effects)["velocity"]
 
 
-def _expected(inputs: Mapping[str, FloatArray]) -> tuple[FloatArray, FloatArray]:
-    """Velocity in the column, and the standard uncertainty of the wall factor in it."""
+def velocity_in_column(drag: DragLaw, inputs: Mapping[str, FloatArray]) -> tuple[FloatArray, FloatArray]:
+    """Velocity in the column, and the standard uncertainty of the wall factor in it; (M,) arrays of `inputs_of`."""
     rheology = flow_curve(inputs)
     unbounded = terminal_velocity(
-        lambda reynolds: DRAG[LAW].drag_coefficient(reynolds) * inputs["law"],
+        lambda reynolds: drag(reynolds) * inputs["law"],
         diameter=inputs["diameter"],
         particle_density=inputs["particle_density"],
         fluid_density=inputs["fluid_density"],
@@ -112,6 +145,19 @@ def _expected(inputs: Mapping[str, FloatArray]) -> tuple[FloatArray, FloatArray]
     )
     wall = wall_factor(inputs["diameter"] / inputs["bore"], unbounded.reynolds, flow_index=rheology.flow_index)
     return unbounded.velocity * (wall.factor + inputs["wall_doubt"]), wall.u
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
+class ControlDrop:
+    """An accepted drop of a control sphere."""
+
+    recording: str
+    particle: str
+    sphere: Grain
+    setup: Setup
+    track_u: float  # m/s, uncertainty of the fit alone
+    seen_diameter: float  # m, of its silhouette
+    comparison: Comparison
 
 
 def compare_control(sphere: Grain, setup: Setup, result: Fallen) -> Comparison:

@@ -10,12 +10,16 @@ import pandas as pd
 
 from settlelab.errors import SettlelabError
 from settlelab.measure.acceptance import finding
-from settlelab.measure.chain import Fallen, Setup, bore_of, fallen
-from settlelab.measure.controls import CONTROL_COLUMNS, chain_verdict, compare_control
+from settlelab.measure.causes import likely_causes
+from settlelab.measure.chain import Fallen, Setup, bore_of, fallen, fallen_by_monte_carlo
+from settlelab.measure.controls import CONTROL_COLUMNS, ControlDrop, chain_verdict, compare_control
 from settlelab.measure.falls import View, drop_table, judged, row_of, view_of
 from settlelab.measure.fluids import FluidState, fluid_state
+from settlelab.measure.intervals import INTERVAL_COLUMNS, compared, departures
+from settlelab.measure.lots import scatter_of
 from settlelab.measure.model import Drop, Measured
 from settlelab.measure.particle import Grain, grain_of
+from settlelab.measure.viscosity import viscosity_table
 from settlelab.physics.constants import STANDARD_GRAVITY
 from settlelab.study.model import Particle, Recording, Study
 from settlelab.video.model import Track, TrackedRecording
@@ -45,6 +49,8 @@ class _Tables:
     drops: list[dict[str, object]] = field(default_factory=list)
     budget: list[dict[str, object]] = field(default_factory=list)
     controls: list[dict[str, object]] = field(default_factory=list)
+    intervals: list[dict[str, object]] = field(default_factory=list)
+    control_drops: list[ControlDrop] = field(default_factory=list)
     assumed: list[str] = field(default_factory=lambda: [GRAVITY])
     doubts: list[str] = field(default_factory=list)
 
@@ -97,13 +103,20 @@ def measure_study(study: Study, recordings: Sequence[TrackedRecording]) -> Measu
             _add_drop(tables, _Fall(recording, tracked, track, setup), particle)
     controls = pd.DataFrame(tables.controls, columns=list(CONTROL_COLUMNS)).astype({"passed": bool})
     if not controls["passed"].all():
-        tables.doubts.append(chain_verdict(controls))
+        tables.note((), (chain_verdict(controls), likely_causes(tables.control_drops)))
+    drops = drop_table(tables.drops)
+    scatter = scatter_of(drops)
+    intervals = pd.DataFrame(tables.intervals, columns=list(INTERVAL_COLUMNS))
+    tables.note((), (*(scatter.told if scatter is not None else ()), *departures(intervals)))
     return Measured(
-        drops=drop_table(tables.drops),
+        drops=drops,
         budget=pd.DataFrame(tables.budget, columns=["drop", "output", "input", "share"]).astype({"share": float}),
         controls=controls,
         assumed=tuple(dict.fromkeys(tables.assumed)),
         doubts=tuple(dict.fromkeys(tables.doubts)),
+        scatter=scatter,
+        intervals=intervals,
+        viscosities=viscosity_table(tables.control_drops),
     )
 
 
@@ -152,8 +165,13 @@ def _add_drop(tables: _Tables, fall: _Fall, particle: Particle | None) -> None:
         tables.budget.extend(
             {"drop": number, "output": output, "input": source, "share": share} for source, share in shares.items()
         )
+    if verdict["accepted"]:
+        drawn = fallen_by_monte_carlo(view.velocity, grain, fall.setup, off_axis=view.off_axis)
+        tables.intervals.extend(compared(number, result, drawn, BUDGETED))
     if particle.control and verdict["accepted"]:
-        tables.controls.append(_control_row(number, fall, particle, grain, result))
+        control = _control_drop(fall, particle, grain, result, view)
+        tables.control_drops.append(control)
+        tables.controls.append(_control_row(number, control))
 
 
 def _view(fall: _Fall, particle: Particle | None) -> View:
@@ -172,12 +190,24 @@ def _result(fall: _Fall, particle: Particle, grain: Grain, view: View) -> Fallen
         raise SettlelabError(f"{fall.recording.name}, particle {particle.name}: {error}") from error
 
 
-def _control_row(number: int, fall: _Fall, particle: Particle, grain: Grain, result: Fallen) -> dict[str, object]:
-    comparison = compare_control(grain, fall.setup, result)
+def _control_drop(fall: _Fall, particle: Particle, grain: Grain, result: Fallen, view: View) -> ControlDrop:
+    return ControlDrop(
+        recording=fall.recording.name,
+        particle=particle.name,
+        sphere=grain,
+        setup=fall.setup,
+        track_u=view.velocity.u,
+        seen_diameter=view.projected_diameter,
+        comparison=compare_control(grain, fall.setup, result),
+    )
+
+
+def _control_row(number: int, control: ControlDrop) -> dict[str, object]:
+    comparison = control.comparison
     return {
         "drop": number,
-        "recording": fall.recording.name,
-        "particle": particle.name,
+        "recording": control.recording,
+        "particle": control.particle,
         "expected_velocity": comparison.expected.value,
         "expected_velocity_u": comparison.expected.u,
         "velocity": comparison.measured.value,

@@ -16,7 +16,7 @@ from settlelab.measure.velocity import terminal_velocity
 from settlelab.physics.constants import STANDARD_GRAVITY, FloatArray
 from settlelab.video.model import Track, TrackedRecording
 
-__all__ = ["View", "drop_table", "measure_falls", "row_of", "track_table", "view_of"]
+__all__ = ["View", "drop_table", "measure_falls", "row_of", "silhouette_wander", "track_table", "view_of"]
 
 # The centre of an angular grain's silhouette moves against its centre of mass by so much of its diameter while it turns
 # (k = 1; simulated grains), in full where the circularity is below 1 by so much.
@@ -67,7 +67,9 @@ def view_of(track: Track, tracked: TrackedRecording, *, density_ratio: float = m
     velocity = terminal_velocity(
         track.time,
         track.y * scale,
-        wander=0.0 if sphere else _wander(track) * scale,
+        wander=0.0
+        if sphere
+        else silhouette_wander(_projected_diameter(track.area) * scale, _median(track.circularity)),
         slowest=_slowest_approach(track, scale, density_ratio),
     )
     window = slice(velocity.first, velocity.last + 1)
@@ -85,10 +87,17 @@ def view_of(track: Track, tracked: TrackedRecording, *, density_ratio: float = m
     )
 
 
-def _wander(track: Track) -> float:
-    """How far the silhouette's centre may move against the centre of mass [px], k = 1; none for a round silhouette."""
-    angularity = min((1 - _median(track.circularity)) / ANGULAR, 1.0)
-    return WANDER * _projected_diameter(track.area) * max(angularity, 0.0)
+def silhouette_wander(diameter: float, circularity: float) -> float:
+    """How far a silhouette's centre may move against the centre of mass, k = 1; none for a round silhouette.
+
+    Parameters
+    ----------
+    diameter : float
+        Of the silhouette, in any unit of length; the result is in the same.
+    circularity : float
+        Of the silhouette [-].
+    """
+    return WANDER * diameter * max(min((1 - circularity) / ANGULAR, 1.0), 0.0)
 
 
 def _projected_diameter(area: FloatArray) -> float:

@@ -101,6 +101,16 @@ class TrackPoint:
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
+class Scatter:
+    """How drops repeat and particles differ, relative to the velocity; see `lots`."""
+
+    lots: pd.DataFrame  # a row per lot and fluid, one for all together: scatter within and between particles, ...
+    marks: pd.DataFrame  # outliers (1 %) and stragglers (5 %); none was removed
+    trends: pd.DataFrame  # a row per fluid with replicates: change of velocity per drop, in order of release
+    told: tuple[str, ...]  # what of it a reader must know, one sentence each
+
+
+@dataclass(frozen=True, slots=True, kw_only=True)
 class Measured:
     """All that the measuring room computes for a study."""
 
@@ -111,3 +121,6 @@ class Measured:
     )  # drop, recording, particle, expected_velocity, expected_velocity_u, velocity, velocity_u, en, passed
     assumed: tuple[str, ...]  # one sentence each
     doubts: tuple[str, ...]  # e.g. falls that do not match the names of a recording
+    scatter: Scatter | None = None  # None where no cutting was accepted
+    intervals: pd.DataFrame | None = None  # accepted drops: 95 % intervals by propagation and by Monte Carlo
+    viscosities: pd.DataFrame | None = None  # by control spheres, a row per Newtonian fluid; see `viscosity`

@@ -14,9 +14,11 @@ from jinja2 import Environment, PackageLoader, StrictUndefined
 from settlelab.measure.model import Measured
 from settlelab.report import sections
 from settlelab.report.calibrated import calibration_view
+from settlelab.report.intervals import intervals_view
 from settlelab.report.lab import lab_table
 from settlelab.report.origin import origin
 from settlelab.report.pictures import save_charts, save_overlays
+from settlelab.report.scatter import scatter_view
 from settlelab.report.verdict import findings
 from settlelab.study.model import Study
 from settlelab.video.model import TrackedRecording
@@ -128,12 +130,18 @@ def _tables(
     """Every table of the page; None where there is nothing to show."""
     system, drops = study.report.units, measured.drops
     shares = sections.budget_shares(measured)
+    viscosities, intervals = measured.viscosities, measured.intervals
     return {
         "lab": sections.lab_view(lab_table(measured, calibration), system),
         "ranking": sections.ranking_view(calibration) if calibration else None,
         "calibration": calibration_view(calibration) if calibration else None,
         "controls": sections.controls_view(measured.controls, system) if len(measured.controls) else None,
+        "viscosities": sections.viscosities_view(viscosities, system)
+        if viscosities is not None and len(viscosities)
+        else None,
+        "intervals": intervals_view(intervals) if intervals is not None and len(intervals) else None,
         "budget": sections.budget_view(shares) if len(shares) else None,
+        "scatter": scatter_view(measured.scatter) if measured.scatter is not None else None,
         "drops": sections.drops_view(drops, system) if len(drops) else None,
         "fluids": sections.fluids_view(study, drops, system),
         "recordings": sections.recordings_view(study, tracked, system),

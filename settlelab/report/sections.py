@@ -29,6 +29,7 @@ __all__ = [
     "lab_view",
     "ranking_view",
     "recordings_view",
+    "viscosities_view",
 ]
 
 OUTPUTS = {
@@ -104,6 +105,13 @@ CONTROLS = (
     Show(heading="Eₙ", field="en", unit="1", form=lambda value: percent(float(str(value)), 2)),
     Show(heading="agrees", field="passed"),
 )
+VISCOSITIES = (
+    Show(heading="fluid", field="fluid"),
+    Show(heading="control drops", field="drops", unit="1"),
+    Show(heading="viscosity by the falling spheres", field="viscosity", u="viscosity_u", unit="mPa s"),
+    Show(heading="viscosity as stated", field="stated_viscosity", u="stated_viscosity_u", unit="mPa s"),
+    Show(heading="most of the uncertainty from", field="source"),
+)
 RANKING = (
     Show(heading="correlation", field="method"),
     Show(heading="kind", field="kind"),
@@ -151,6 +159,11 @@ def drops_view(drops: pd.DataFrame, system: UnitSystem) -> TableView:
 def controls_view(controls: pd.DataFrame, system: UnitSystem) -> TableView:
     """Control spheres: expected against measured velocity."""
     return table_view(controls, CONTROLS, system)
+
+
+def viscosities_view(viscosities: pd.DataFrame, system: UnitSystem) -> TableView:
+    """Falling-ball viscosities beside those that the study states."""
+    return table_view(viscosities, VISCOSITIES, system)
 
 
 def ranking_view(calibration: Calibration) -> TableView:

@@ -29,13 +29,15 @@ SINGLE = ("study", "column", "camera", "particles", "calibration", "report")
 SEVERAL = ("fluid", "control", "recording")
 
 
-def read_study(path: Path) -> Study:
+def read_study(path: Path, *, before_filming: bool = False) -> Study:
     """A study with its bench tables, validated and in SI.
 
     Parameters
     ----------
     path : Path
         A `study.toml`, or the folder that holds it.
+    before_filming : bool
+        Whether videos, pictures of a checkerboard and the scale of the camera may still be missing.
 
     Raises
     ------
@@ -44,7 +46,7 @@ def read_study(path: Path) -> Study:
     """
     file = path / "study.toml" if path.is_dir() else path
     raw = load_toml(file)
-    source = Source(file=file, inputs=[file])
+    source = Source(file=file, before_filming=before_filming, inputs=[file])
     _check_sections(source, raw)
     study = _study(source, raw)
     if source.faults:

@@ -65,6 +65,8 @@ def _video(source: Source, section: Section[RecordingKeys], camera: Section[Came
             source.fault(place, None, 'a recording such as "a1.mp4"')
         return source.file.parent
     video = source.file.parent / typed
+    if source.before_filming and not video.exists():
+        return video
     if not video.is_dir():
         source.path(typed, place)
     elif not any(picture.suffix.lower() in PICTURES for picture in video.iterdir()):

@@ -37,17 +37,17 @@ def overridden(base: Section[AnyKeys], over: AnyKeys | None, place: str, at_faul
 
 
 def check_camera(source: Source, section: Section[CameraKeys]) -> None:
-    """Exactly one way of giving the scale, and that one complete."""
+    """Exactly one way of giving the scale, and that one complete; before filming, at most one."""
     keys, place = section.keys, section.place
     begun = [way for way in SCALES if any(getattr(keys, key) is not None or key in section.at_fault for key in way)]
-    if not begun:
+    if not begun and not source.before_filming:
         accepted = "a scale: mm_per_px, marks with marks_apart, graduation, or checkerboard with square"
         source.fault(place, None, accepted)
     elif len(begun) > 1:
         source.fault(place, " and ".join(way[0] for way in begun), "one way of giving the scale: keep one of them")
     for key in (key for way in begun for key in way if section.lacks(key)):
         source.fault(f"{place}, {key}", None, TYPED.get(key, wanted("m")))
-    if keys.checkerboard is not None:
+    if keys.checkerboard is not None and not source.before_filming:
         source.path(keys.checkerboard, f"{place}, checkerboard")
     for key in sorted(SCALE_KEYS - TYPED.keys()):
         _assume_certain(source, section, key)

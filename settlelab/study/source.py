@@ -46,6 +46,7 @@ class Source:
     """The study file with all that is found out about it while it is read."""
 
     file: Path
+    before_filming: bool = False  # what only filming gives need not be there yet
     faults: list[Fault] = field(default_factory=list)
     assumed: list[str] = field(default_factory=list)
     inputs: list[Path] = field(default_factory=list)

@@ -45,7 +45,7 @@ def frame_times(container: FloatArray, number: np.ndarray, stated: Quantity | No
     missing = int(np.sum(np.maximum(steps - 1, 0)))
     clock = Clock(
         frame_rate=float(rate),
-        u_relative=_u_relative(stated),
+        u_relative=rate_u(stated),
         source="container" if stated is None else "stated",
         irregular=missing > 0 or not regular,
         missing_frames=missing,
@@ -53,7 +53,8 @@ def frame_times(container: FloatArray, number: np.ndarray, stated: Quantity | No
     return ticks / rate, clock
 
 
-def _u_relative(stated: Quantity | None) -> float:
+def rate_u(stated: Quantity | None) -> float:
+    """Relative standard uncertainty of time intervals: of a stated rate, or of the container's clock (None)."""
     if stated is None:
         return float(NTSC_U)
     return stated.u / stated.value if stated.u > 0 else QUARTZ_U

@@ -99,8 +99,9 @@ def test_a_control_sphere_at_the_expected_velocity_passes() -> None:
 def test_a_control_sphere_filmed_at_a_wrong_scale_fails() -> None:
     found = measure_study(study(SPHERE), [tracked(track(STOKES * 1.1))])
     assert not found.controls["passed"].any()
-    (doubt,) = found.doubts
+    doubt, cause = found.doubts
     assert doubt.startswith("1 of 1 control drops does not agree with the expected velocity")
+    assert "viscosity of oil 15 % below what was stated" in cause  # Stokes: as much thinner as it is too fast
 
 
 def test_refused_control_drops_do_not_speak_for_the_chain() -> None:

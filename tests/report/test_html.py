@@ -5,16 +5,18 @@ from dataclasses import replace
 from html.parser import HTMLParser
 from pathlib import Path
 
+import pandas as pd
 import pytest
 
 from settlelab.calibrate import Calibration
+from settlelab.measure import scatter_of
 from settlelab.measure.model import Measured
 from settlelab.report import write_report
 from settlelab.study.model import ReportChoice
 from tests.report.invented import calibration_of, drop, invented_drops, measured_of, study_of, tracked_of
 
 SECTIONS = ("glance", "lab-table", "overlays", "drag", "predictions", "ranking", "calibration", "controls", "budget")
-SECTIONS += ("drops", "setup", "origin", "cautions", "provenance")
+SECTIONS += ("repeatability", "drops", "setup", "origin", "cautions", "provenance")
 VOID = {"meta", "img", "br", "link"}
 
 
@@ -151,6 +153,16 @@ def test_without_calibration(write: Write) -> None:
     page = write(measured_of(invented_drops()))
     assert "No drop could be compared." in page.sections["ranking"]
     assert "No drop could be compared." in page.sections["calibration"]
+
+
+def test_replicates_and_falling_ball_viscosity(write: Write) -> None:
+    measured = measured_of(invented_drops())
+    row = {"fluid": "glycerol", "drops": 2, "viscosity": 0.0113, "viscosity_u": 0.0004, "stated_viscosity": 0.0111}
+    viscosities = pd.DataFrame([row | {"stated_viscosity_u": 0.0002, "source": "drag law"}])
+    page = write(replace(measured, scatter=scatter_of(measured.drops), viscosities=viscosities))
+    assert "repeatability limit r, %" in page.sections["repeatability"]
+    assert "No drop and no particle stands out" in page.sections["repeatability"]
+    assert "11.30 ± 0.40" in page.sections["controls"]
 
 
 def test_published_law_kept(write: Write) -> None:

@@ -102,3 +102,12 @@ def test_a_scale_found_in_the_picture_is_measured() -> None:
     told = origin(study_of(recordings=(recording,)), measured_of([drop(1)]), [])
     assert "scale, from marks of known spacing found in the picture" in told.measured
     assert not any(text.startswith("scale") for text in told.typed)
+
+
+def test_falling_ball_viscosities_stand_beside_those_stated() -> None:
+    row = {"fluid": "glycerol", "drops": 2, "viscosity": 0.0113, "viscosity_u": 0.0004, "stated_viscosity": 0.0111}
+    row |= {"stated_viscosity_u": 0.0002, "source": "drag law"}
+    (shown,) = texts(sections.viscosities_view(pd.DataFrame([row]), "lab"))
+    assert shown["viscosity by the falling spheres, mPa·s"] == "11.30 ± 0.40"
+    assert shown["viscosity as stated, mPa·s"] == "11.10 ± 0.20"
+    assert shown["most of the uncertainty from"] == "drag law"
