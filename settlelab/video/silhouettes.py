@@ -7,15 +7,22 @@ blur of the lens nor the position within a pixel biases them.
 
 from __future__ import annotations
 
-from collections.abc import Iterator
 from dataclasses import dataclass
-from typing import Any
 
 import cv2
 import numpy as np
 from numpy.typing import NDArray
 
-from settlelab.video.background import DARKEST, Background, Image, texture
+from settlelab.video.background import (
+    DARKEST,
+    FAINTEST,
+    SEEN,
+    TEXTURE_SHARE,
+    Background,
+    Image,
+    full_rows,
+    texture,
+)
 
 FloatArray = NDArray[np.float64]
 Mask = NDArray[np.uint8]
@@ -23,14 +30,11 @@ Mask = NDArray[np.uint8]
 SMOOTHING = 1.2  # px, standard deviation of the Gaussian before the threshold
 NOISE_LEFT = 0.235  # of white noise after that smoothing: 1 / (2 sqrt(pi) 1.2)
 LIGHT_SMOOTHING = 0.7  # px, before levels are read off
-SEEN = 4.5  # times the smoothed noise: a pixel belongs to an object
 CERTAIN = 1.4  # times that limit: its peak makes it one
-FAINTEST = 1.5  # grey levels; below that compression leaves marks of its own
 APART = 0.25  # of the peak: what is below lies between two objects
 SMALLEST_SHARE = 0.05  # of the largest of objects side by side; less is a shred of its edge
 REACH = 3  # px, how far beyond the mask an object's light is summed
 INSIDE = 3  # px from the edge of the half-level silhouette: certainly covered
-TEXTURE_SHARE = 0.08  # of the difference of neighbouring pixels: what a shake of a tenth of a pixel changes
 SMALLEST_AREA = 3.0  # px2
 MARK_CONTRAST = 0.05  # of a strong object's contrast: compression leaves marks that faint around it
 MARK_REACH = 32.0  # px from its edge, two blocks of the codec
@@ -68,19 +72,32 @@ class Window:
 
 
 def window_of(picture: NDArray[np.generic], box: tuple[int, int, int, int], gains: Image, scene: Background) -> Window:
-    """Cut the box (left, top, right, bottom) out of a frame; `gains` is the brightness of each full row."""
+    """Set a part of a frame, cut out at the box (left, top, right, bottom), against the background.
+
+    `gains` is the brightness of each small row of the frame.
+    """
     left, top, right, bottom = box
-    part = picture[top:bottom, left:right].astype(np.float32) - np.float32(scene.black)
-    expected = scene.level[top:bottom, left:right] * gains[top:bottom, None]
+    coarse = scene.coarse
+    part = picture.astype(np.float32)
+    part -= np.float32(coarse.black)
+    expected = scene.level[top:bottom, left:right] * full_rows(gains, coarse.factor, top, bottom)[:, None]
     taken = expected - part
-    rim = np.concatenate([taken[:2].ravel(), taken[-2:].ravel(), taken[:, :2].ravel(), taken[:, -2:].ravel()])
-    middle = np.median(rim)
-    noise = scene.noise[top:bottom, left:right]
-    quiet = rim[np.abs(rim - middle) < 3 * np.median(noise)]
+    noise = _noise(scene, box)
+    rim = np.concatenate([taken[:2].ravel(), taken[-2:].ravel(), taken[2:-2, :2].ravel(), taken[2:-2, -2:].ravel()])
+    quiet = rim[np.abs(rim - np.median(rim)) < 3 * noise.mean()]
     taken -= quiet.mean() if len(quiet) > len(rim) // 2 else 0.0  # a lamp that changed here only
-    height, width = picture.shape
+    height, width = scene.level.shape
     limit = np.maximum(SEEN * NOISE_LEFT * noise, FAINTEST) + TEXTURE_SHARE * texture(expected)
     return Window(left=left, top=top, taken=taken, scene=expected, limit=limit, size=(width, height))
+
+
+def _noise(scene: Background, box: tuple[int, int, int, int]) -> Image:
+    """Noise of every pixel of a box, that of its block."""
+    left, top, right, bottom = box
+    factor, (rows, columns) = scene.coarse.factor, scene.noise.shape
+    across = np.minimum(np.arange(left, right) // factor, columns - 1)
+    down = np.minimum(np.arange(top, bottom) // factor, rows - 1)
+    return scene.noise[down[:, None], across]
 
 
 def silhouettes(window: Window) -> list[Silhouette]:
@@ -234,51 +251,3 @@ def _filled(mask: Mask) -> Mask:
 def _disc(radius: int) -> Mask:
     side = 2 * radius + 1
     return np.asarray(cv2.getStructuringElement(cv2.MORPH_ELLIPSE, (side, side)), dtype=np.uint8)
-
-
-def changed_boxes(small: Image, gains: Image, scene: Background, margin: int) -> Iterator[tuple[int, int, int, int]]:
-    """Boxes (left, top, right, bottom) of the full picture in which something differs from the background.
-
-    Overlapping boxes are joined, so that no object is met twice.
-    """
-    difference = np.abs(small - scene.small * gains[:, None])
-    limit = np.maximum(SEEN * scene.small_noise, FAINTEST) + TEXTURE_SHARE / scene.factor * scene.small_texture
-    mask = (difference > limit).astype(np.uint8)
-    if not mask.any():
-        return
-    reach = margin // scene.factor + 1
-    joined = cv2.dilate(mask, np.ones((2 * reach + 1, 2 * reach + 1), np.uint8))
-    count, _, stats, _ = cv2.connectedComponentsWithStats(joined, connectivity=8)
-    height, width = scene.level.shape
-    for left, top, wide, high in _disjoint(stats[1:count, :4]):
-        yield (
-            left * scene.factor,
-            top * scene.factor,
-            min((left + wide) * scene.factor + scene.factor * (left + wide == small.shape[1]), width),
-            min((top + high) * scene.factor + scene.factor * (top + high == small.shape[0]), height),
-        )
-
-
-def _disjoint(boxes: NDArray[Any]) -> list[tuple[int, int, int, int]]:
-    """Boxes (left, top, width, height), those that overlap replaced by their common hull until none do."""
-    waiting = [tuple(int(value) for value in box) for box in boxes]
-    done: list[tuple[int, int, int, int]] = []
-    while waiting:
-        left, top, wide, high = waiting.pop(0)
-        for index, (other_left, other_top, other_wide, other_high) in enumerate(done):
-            apart = (
-                left >= other_left + other_wide
-                or other_left >= left + wide
-                or top >= other_top + other_high
-                or other_top >= top + high
-            )
-            if not apart:
-                del done[index]
-                first_x, first_y = min(left, other_left), min(top, other_top)
-                last_x = max(left + wide, other_left + other_wide)
-                last_y = max(top + high, other_top + other_high)
-                waiting.insert(0, (first_x, first_y, last_x - first_x, last_y - first_y))
-                break
-        else:
-            done.append((left, top, wide, high))
-    return sorted(done, key=lambda box: (box[1], box[0]))

@@ -48,6 +48,7 @@ class Source(Protocol):
     rotation: int  # degrees clockwise that the container asks for before showing
     expected_frames: int  # a guess, for progress only
     black: float  # grey level of no light
+    has_clock: bool
     notes: list[str]
 
     def frames(self) -> Iterator[Frame]:
@@ -80,6 +81,7 @@ class VideoFile:
     expected_frames: int
     black: float
     undecoded_luma: bool
+    has_clock: bool = True
     notes: list[str] = field(default_factory=list)
 
     def frames(self) -> Iterator[Frame]:
@@ -113,6 +115,7 @@ class PictureFolder:
     expected_frames: int
     rotation: int = 0
     black: float = 0.0
+    has_clock: bool = False
     notes: list[str] = field(default_factory=list)
 
     def frames(self) -> Iterator[Frame]:
@@ -154,6 +157,7 @@ def _open_file(path: Path) -> VideoFile:
         expected = max(0, int(capture.get(cv2.CAP_PROP_FRAME_COUNT)))
     black = 0.0
     if luma:
+        # opened anew: switched off in the middle, the conversion leaves other grey levels behind
         with _capture(path, undecoded_luma=True) as capture:
             there, plain = capture.read()
         luma = there and plain.shape[:2] == shown.shape[:2]
