@@ -19,7 +19,7 @@ Image = NDArray[np.float32]
 Mask = NDArray[np.uint8]
 
 SAMPLE_BYTES = 100_000_000  # of kept frames
-MOST_SAMPLES, FEWEST_SAMPLES = 24, 8
+MOST_SAMPLES, FEWEST_SAMPLES = 16, 8
 DETECTION_PIXELS = 120_000  # of the small picture on which changes are looked for
 SMOOTHED = {1: 1.2, 2: 0.7}  # standard deviation in blocks, by the side of a block
 LARGEST_FACTOR = 4  # a particle of 3 px must still show in the small picture
@@ -33,7 +33,9 @@ DARKEST = 8.0  # grey levels; darker places say nothing on the lamp
 LIT_SHARE = 0.05  # of the picture, that must be brighter than that
 ROW_SMOOTHING = 4.0  # small rows; flicker bands of a rolling shutter are wider
 FEW = 40  # rows and columns from which the brightness of a frame is told roughly
+FAIR_COLUMNS = 90  # from which the brightness of a row is told
 SEEN = 4.5  # times the noise: something changed
+CERTAIN = 1.4  # times that limit, or of what is seen beside it: it is no mark of the codec
 FAINTEST = 1.5  # grey levels; below that compression leaves marks of its own
 TEXTURE_SHARE = 0.08  # of the difference of neighbouring pixels: what a shake of a tenth of a pixel changes
 
@@ -52,12 +54,20 @@ class Coarse:
     def look(self, picture: Picture) -> tuple[Image, Image]:
         """A frame as a small picture, and the brightness of its rows against the scene."""
         small = shrink(picture, self.factor, self.black)
-        return small, row_gains(small, self)
+        return small, row_gains(small, self.inverse)
 
     def change(self, small: Image, gains: Image) -> Mask:
-        """255 where a small picture differs from the scene by more than noise."""
+        """255 where a small picture differs from the scene by more than noise.
+
+        A block that does so by little counts with two others beside it only: alone it is a mark of the codec.
+        """
         difference = cv2.absdiff(small, self.level * gains[:, None])
-        return np.asarray(cv2.compare(difference, self.limit, cv2.CMP_GT), dtype=np.uint8)
+        changed = cv2.compare(difference, self.limit, cv2.CMP_GT)
+        if not cv2.countNonZero(changed):
+            return np.asarray(changed, dtype=np.uint8)
+        together = cv2.compare(cv2.boxFilter(changed, cv2.CV_16U, (3, 3), normalize=False), 3 * 255, cv2.CMP_GE)
+        certain = cv2.compare(difference, np.float32(CERTAIN) * self.limit, cv2.CMP_GT)
+        return np.asarray(cv2.bitwise_or(cv2.bitwise_and(changed, together), certain), dtype=np.uint8)
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -66,6 +76,7 @@ class Background:
 
     level: Image  # (height, width), grey levels
     noise: Image  # (height // factor, width // factor), grey levels: standard deviation of one pixel over time
+    texture: Mask  # (height, width), grey levels: difference of neighbouring pixels
     coarse: Coarse
 
 
@@ -143,32 +154,24 @@ def _settled(samples: Sequence[Picture], black: float) -> tuple[Coarse, Image, M
     height, width = samples[0].shape
     factor = detection_factor((width, height))
     smalls = [shrink(picture, factor, black) for picture in samples]
-    rough = _coarse(_median(smalls), None, samples[-1], factor, black)
+    rough = _inverse(_median(smalls))
     gains = np.stack([row_gains(small, rough) for small in smalls])
     evened = [small / gain[:, None] for small, gain in zip(smalls, gains, strict=True)]
     level = _median(evened)
     away = [cv2.absdiff(one, level) for one in evened]
     noise = np.float32(MAD_TO_SD) * _median(away)
-    usual = max(float(np.median(noise)), ROUNDING_NOISE / REACH_OF_A_VALUE)
+    usual = max(middle_of(noise[::3, ::3]), ROUNDING_NOISE / REACH_OF_A_VALUE)
     noise = np.maximum(cv2.blur(noise, (3, 3)), np.float32(usual))
     quiet = np.stack([one < np.maximum(QUIET * noise, QUIET_FLOOR) for one in away]).astype(np.uint8)
-    return _coarse(level, noise, samples[-1], factor, black), gains, quiet
+    steepest = cv2.dilate(texture(_eight_bit(samples[-1])), np.ones((2 * factor - 1, 2 * factor - 1), np.uint8))
+    limit = np.maximum(SEEN * noise, FAINTEST) + TEXTURE_SHARE / factor * shrink(steepest, factor, 0.0)
+    coarse = Coarse(factor=factor, black=black, level=level, noise=noise, limit=limit, inverse=_inverse(level))
+    return coarse, gains, quiet
 
 
-def _coarse(level: Image, noise: Image | None, picture: Picture, factor: int, black: float) -> Coarse:
-    """`picture` is any frame: how much neighbouring pixels differ is read off it."""
-    noise = np.zeros_like(level) if noise is None else noise
-    eight_bit = picture if picture.dtype == np.uint8 else np.clip(picture, 0, 255).astype(np.uint8)
-    steepest = cv2.dilate(texture(eight_bit), np.ones((2 * factor - 1, 2 * factor - 1), np.uint8))
-    lit = level > DARKEST
-    return Coarse(
-        factor=factor,
-        black=black,
-        level=level,
-        noise=noise,
-        limit=np.maximum(SEEN * noise, FAINTEST) + TEXTURE_SHARE / factor * shrink(steepest, factor, 0.0),
-        inverse=np.divide(1.0, level, out=np.zeros_like(level), where=lit),
-    )
+def _inverse(level: Image) -> Image:
+    """1 / level where the scene is lit, else 0."""
+    return np.divide(1.0, level, out=np.zeros_like(level), where=level > DARKEST)
 
 
 def background_of(samples: Sequence[Picture], black: float) -> Background:
@@ -189,7 +192,7 @@ def background_of(samples: Sequence[Picture], black: float) -> Background:
         noise[blocks] = _block_means(_mean(scatter, still[some, blocks], coarse.factor), coarse.factor)
     noise *= np.float32(np.sqrt(np.pi / 2))  # from the mean absolute deviation of a normal distribution
     noise = np.maximum(cv2.blur(noise, (3, 3)), np.float32(max(float(np.median(noise)), ROUNDING_NOISE)))
-    return Background(level=level, noise=noise, coarse=coarse)
+    return Background(level=level, noise=noise, texture=texture(_eight_bit(level)), coarse=coarse)
 
 
 def _strips(height: int, factor: int) -> Iterator[tuple[slice, slice]]:
@@ -244,12 +247,16 @@ def _median(pictures: Sequence[Image]) -> Image:
     return ranked[middle] if len(ranked) % 2 else (ranked[middle - 1] + ranked[middle]) / np.float32(2)
 
 
-def texture(level: Picture) -> Picture:
+def texture(level: Mask) -> Mask:
     """Difference of neighbouring pixels: where it is large, a shake or the codec changes the picture a lot."""
-    return np.asarray(cv2.morphologyEx(level, cv2.MORPH_GRADIENT, np.ones((3, 3), np.uint8)))
+    return np.asarray(cv2.morphologyEx(level, cv2.MORPH_GRADIENT, np.ones((3, 3), np.uint8)), dtype=np.uint8)
 
 
-def row_gains(small: Image, scene: Coarse) -> Image:
+def _eight_bit(picture: Picture) -> Mask:
+    return picture if picture.dtype == np.uint8 else cv2.convertScaleAbs(picture)
+
+
+def row_gains(small: Image, inverse: Image) -> Image:
     """Brightness of each row of a small picture over that of the scene, objects left out.
 
     Rows, because mains flicker and a rolling shutter make bands across the picture as decoded.
@@ -258,21 +265,22 @@ def row_gains(small: Image, scene: Coarse) -> Image:
     ----------
     small : (H, W) array
         Grey levels above black.
-    scene : Coarse
-        What it is held against.
+    inverse : (H, W) array
+        1 / grey level of the scene, 0 where it is too dark to tell.
 
     Returns
     -------
     (H,) array
         Gains [-]; 1 where the scene is too dark to tell.
     """
-    ratio = np.asarray(cv2.multiply(small, scene.inverse))
+    apart = max(1, small.shape[1] // FAIR_COLUMNS)
+    ratio = small[:, ::apart] * inverse[:, ::apart]
     few = ratio[:: max(1, len(ratio) // FEW), :: max(1, ratio.shape[1] // FEW)]
     told = few[few > 0]
     if len(told) < LIT_SHARE * few.size:
         return np.ones(len(small), np.float32)
-    middle = float(np.median(told))
-    reach = max(5 * MAD_TO_SD * float(np.median(np.abs(told - middle))), 0.02 * middle)
+    middle = middle_of(told)
+    reach = max(5 * MAD_TO_SD * middle_of(np.abs(told - middle)), 0.02 * middle)
     fair = cv2.inRange(ratio, max(middle - reach, 1e-6), middle + reach)
     total = cv2.reduce(cv2.multiply(ratio, fair, scale=1 / 255, dtype=cv2.CV_32F), 1, cv2.REDUCE_SUM)
     count = cv2.reduce(fair, 1, cv2.REDUCE_SUM, dtype=cv2.CV_32F) / np.float32(255)
@@ -280,6 +288,11 @@ def row_gains(small: Image, scene: Coarse) -> Image:
     count = cv2.GaussianBlur(count, (1, 0), sigmaX=0.1, sigmaY=ROW_SMOOTHING)
     gains = np.where(count > 1.0, total / np.maximum(count, 1.0), middle)
     return gains[:, 0].astype(np.float32)
+
+
+def middle_of(values: Image) -> float:
+    """The middle value; far quicker than a median for few of them."""
+    return float(np.sort(values, axis=None)[values.size // 2])
 
 
 def full_rows(gains: Image, factor: int, top: int, bottom: int) -> Image:

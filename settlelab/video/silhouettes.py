@@ -14,6 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from settlelab.video.background import (
+    CERTAIN,
     DARKEST,
     FAINTEST,
     SEEN,
@@ -21,7 +22,7 @@ from settlelab.video.background import (
     Background,
     Image,
     full_rows,
-    texture,
+    middle_of,
 )
 
 FloatArray = NDArray[np.float64]
@@ -30,7 +31,6 @@ Mask = NDArray[np.uint8]
 SMOOTHING = 1.2  # px, standard deviation of the Gaussian before the threshold
 NOISE_LEFT = 0.235  # of white noise after that smoothing: 1 / (2 sqrt(pi) 1.2)
 LIGHT_SMOOTHING = 0.7  # px, before levels are read off
-CERTAIN = 1.4  # times that limit: its peak makes it one
 APART = 0.25  # of the peak: what is below lies between two objects
 SMALLEST_SHARE = 0.05  # of the largest of objects side by side; less is a shred of its edge
 REACH = 3  # px, how far beyond the mask an object's light is summed
@@ -82,28 +82,28 @@ def window_of(picture: NDArray[np.generic], box: tuple[int, int, int, int], gain
     part -= np.float32(coarse.black)
     expected = scene.level[top:bottom, left:right] * full_rows(gains, coarse.factor, top, bottom)[:, None]
     taken = expected - part
-    noise = _noise(scene, box)
+    noise = cv2.resize(_blocks(scene, box), (right - left, bottom - top), interpolation=cv2.INTER_NEAREST)
     rim = np.concatenate([taken[:2].ravel(), taken[-2:].ravel(), taken[2:-2, :2].ravel(), taken[2:-2, -2:].ravel()])
-    quiet = rim[np.abs(rim - np.median(rim)) < 3 * noise.mean()]
+    quiet = rim[np.abs(rim - middle_of(rim)) < 3 * noise.mean()]
     taken -= quiet.mean() if len(quiet) > len(rim) // 2 else 0.0  # a lamp that changed here only
     height, width = scene.level.shape
-    limit = np.maximum(SEEN * NOISE_LEFT * noise, FAINTEST) + TEXTURE_SHARE * texture(expected)
+    limit = np.maximum(SEEN * NOISE_LEFT * noise, FAINTEST)
+    limit += np.float32(TEXTURE_SHARE) * scene.texture[top:bottom, left:right]
     return Window(left=left, top=top, taken=taken, scene=expected, limit=limit, size=(width, height))
 
 
-def _noise(scene: Background, box: tuple[int, int, int, int]) -> Image:
-    """Noise of every pixel of a box, that of its block."""
-    left, top, right, bottom = box
-    factor, (rows, columns) = scene.coarse.factor, scene.noise.shape
-    across = np.minimum(np.arange(left, right) // factor, columns - 1)
-    down = np.minimum(np.arange(top, bottom) // factor, rows - 1)
-    return scene.noise[down[:, None], across]
+def _blocks(scene: Background, box: tuple[int, int, int, int]) -> Image:
+    """Noise of the blocks of a box."""
+    left, top, right, bottom = (edge // scene.coarse.factor for edge in box)
+    return scene.noise[top : max(bottom, top + 1), left : max(right, left + 1)]
 
 
 def silhouettes(window: Window) -> list[Silhouette]:
     """Every object of a window, in the order of the picture."""
-    smooth = np.asarray(cv2.GaussianBlur(window.taken, (0, 0), LIGHT_SMOOTHING), dtype=np.float32)
     change = np.abs(cv2.GaussianBlur(window.taken, (0, 0), SMOOTHING)) / window.limit
+    if change.max() < CERTAIN:
+        return []
+    smooth = np.asarray(cv2.GaussianBlur(window.taken, (0, 0), LIGHT_SMOOTHING), dtype=np.float32)
     count, labels, stats, _ = cv2.connectedComponentsWithStats((change > 1).astype(np.uint8), connectivity=8)
     found = []
     for label in range(1, count):
@@ -205,10 +205,11 @@ def _lamp(scene: Image) -> Image:
 def _plateau(change: Image, mask: Mask) -> float:
     """Change of a pixel that is wholly covered: the middle of the inside, or the peak where there is no inside."""
     values = change[mask > 0]
-    peak = float(np.quantile(values, 0.95)) if len(values) > 40 else float(values.max())
+    values.sort()
+    peak = float(values[int(0.95 * len(values))]) if len(values) > 40 else float(values[-1])
     core = _filled(((change > peak / 2) & (mask > 0)).astype(np.uint8))
     inside = change[cv2.erode(core, _disc(INSIDE), borderValue=0) > 0]
-    return float(np.median(inside)) if len(inside) >= 5 and np.median(inside) > peak / 2 else peak
+    return max(middle_of(inside), peak / 2) if len(inside) >= 5 else peak
 
 
 def _outline(coverage: Image) -> tuple[FloatArray, float]:

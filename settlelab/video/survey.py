@@ -19,8 +19,8 @@ from settlelab.video.background import Background, Coarse, Image, Mask, Sampler,
 from settlelab.video.silhouettes import Silhouette, silhouettes, window_of, without_marks
 from settlelab.video.source import Frame, Picture, Source, read_ahead
 
-FIRST_FRAMES = 8  # from which the scene is known first
-FIRST_REVISION = 32  # frames after which it is taken anew, and then whenever their number has doubled
+FIRST_FRAMES = 8  # from which the scene is known first, and about as many later
+REVISIONS = frozenset(32 * 8**power for power in range(8))  # frames after which it is taken anew
 STORE_BYTES = 60_000_000  # of windows
 WINDOW_MARGIN = 10  # px around what changed
 
@@ -67,8 +67,9 @@ def survey(source: Source) -> Survey:
             if len(waiting) < FIRST_FRAMES:
                 continue
             seen.scenes.append((0, coarse_of([one.picture for one in waiting], source.black)))
-        elif count >= FIRST_REVISION and count & (count - 1) == 0:
-            seen.scenes.append((count, coarse_of(sampler.kept, source.black)))
+        elif count in REVISIONS:
+            few = sampler.kept[:: 1 + len(sampler.kept) // FIRST_FRAMES]
+            seen.scenes.append((count, coarse_of(few, source.black)))
         stored += sum(_keep(one.picture, seen, stored) for one in waiting)
         waiting.clear()
     if waiting:
@@ -102,7 +103,7 @@ def measured(seen: Survey, source: Source, background: Background) -> list[list[
     found: list[list[Silhouette]] = [[] for _ in seen.number]
     again: set[int] = set(range(len(found))[seen.stored_until :]) if seen.stored_until is not None else set()
     for frames, then in seen.epochs():
-        now = row_gains(then.level, scene)
+        now = row_gains(then.level, scene.inverse)
         if scene.change(then.level, now).any():
             again.update(frames)
             continue
