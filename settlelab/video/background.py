@@ -18,7 +18,7 @@ from settlelab.video.source import Picture
 Image = NDArray[np.float32]
 Mask = NDArray[np.uint8]
 
-SAMPLE_BYTES = 100_000_000  # of kept frames
+SAMPLE_BYTES = 84_000_000  # of kept frames
 MOST_SAMPLES, FEWEST_SAMPLES = 16, 8
 DETECTION_PIXELS = 120_000  # of the small picture on which changes are looked for
 SMOOTHED = {1: 1.2, 2: 0.7}  # standard deviation in blocks, by the side of a block
@@ -51,11 +51,6 @@ class Coarse:
     limit: Image  # same shape: change of a block that is more than noise
     inverse: Image  # same shape: 1 / level where the scene is lit, else 0
 
-    def look(self, picture: Picture) -> tuple[Image, Image]:
-        """A frame as a small picture, and the brightness of its rows against the scene."""
-        small = shrink(picture, self.factor, self.black)
-        return small, row_gains(small, self.inverse)
-
     def change(self, small: Image, gains: Image) -> Mask:
         """255 where a small picture differs from the scene by more than noise.
 
@@ -65,7 +60,7 @@ class Coarse:
         changed = cv2.compare(difference, self.limit, cv2.CMP_GT)
         if not cv2.countNonZero(changed):
             return np.asarray(changed, dtype=np.uint8)
-        together = cv2.compare(cv2.boxFilter(changed, cv2.CV_16U, (3, 3), normalize=False), 3 * 255, cv2.CMP_GE)
+        together = cv2.inRange(cv2.boxFilter(changed, cv2.CV_16U, (3, 3), normalize=False), 3 * 255, 9 * 255)
         certain = cv2.compare(difference, np.float32(CERTAIN) * self.limit, cv2.CMP_GT)
         return np.asarray(cv2.bitwise_or(cv2.bitwise_and(changed, together), certain), dtype=np.uint8)
 
@@ -156,13 +151,15 @@ def _settled(samples: Sequence[Picture], black: float) -> tuple[Coarse, Image, M
     smalls = [shrink(picture, factor, black) for picture in samples]
     rough = _inverse(_median(smalls))
     gains = np.stack([row_gains(small, rough) for small in smalls])
-    evened = [small / gain[:, None] for small, gain in zip(smalls, gains, strict=True)]
-    level = _median(evened)
-    away = [cv2.absdiff(one, level) for one in evened]
-    noise = np.float32(MAD_TO_SD) * _median(away)
+    for small, gain in zip(smalls, gains, strict=True):
+        np.divide(small, gain[:, None], out=small)
+    level = _median(smalls)
+    for small in smalls:
+        cv2.absdiff(small, level, dst=small)
+    noise = np.float32(MAD_TO_SD) * _median(smalls)
     usual = max(middle_of(noise[::3, ::3]), ROUNDING_NOISE / REACH_OF_A_VALUE)
     noise = np.maximum(cv2.blur(noise, (3, 3)), np.float32(usual))
-    quiet = np.stack([one < np.maximum(QUIET * noise, QUIET_FLOOR) for one in away]).astype(np.uint8)
+    quiet = np.stack([one < np.maximum(QUIET * noise, QUIET_FLOOR) for one in smalls]).astype(np.uint8)
     steepest = cv2.dilate(texture(_eight_bit(samples[-1])), np.ones((2 * factor - 1, 2 * factor - 1), np.uint8))
     limit = np.maximum(SEEN * noise, FAINTEST) + TEXTURE_SHARE / factor * shrink(steepest, factor, 0.0)
     coarse = Coarse(factor=factor, black=black, level=level, noise=noise, limit=limit, inverse=_inverse(level))
@@ -181,14 +178,14 @@ def background_of(samples: Sequence[Picture], black: float) -> Background:
     of a level. Where something always was there, as at the rim of a ripple, it is the mean of all.
     """
     coarse, gains, quiet = _settled(samples, black)
-    still = np.stack([cv2.erode(one, np.ones((3, 3), np.uint8)) for one in quiet])
+    still = np.stack([cv2.erode(one, np.ones((3, 3), np.uint8)) for one in quiet]).astype(np.uint8)
     level = np.empty(samples[0].shape, np.float32)
     noise = np.empty(coarse.level.shape, np.float32)
-    brightness = 1 / np.stack([full_rows(gain, coarse.factor, 0, len(level)) for gain in gains])
+    brightness = np.stack([1 / full_rows(gain, coarse.factor, 0, len(level)) for gain in gains]).astype(np.float32)
     some = slice(None, None, max(1, len(samples) // NOISE_SAMPLES))
     for rows, blocks in _strips(len(level), coarse.factor):
         level[rows] = _mean(_evened(samples, brightness, rows, black), still[:, blocks], coarse.factor)
-        scatter = (cv2.absdiff(one, level[rows]) for one in _evened(samples[some], brightness[some], rows, black))
+        scatter = (_apart(one, level[rows]) for one in _evened(samples[some], brightness[some], rows, black))
         noise[blocks] = _block_means(_mean(scatter, still[some, blocks], coarse.factor), coarse.factor)
     noise *= np.float32(np.sqrt(np.pi / 2))  # from the mean absolute deviation of a normal distribution
     noise = np.maximum(cv2.blur(noise, (3, 3)), np.float32(max(float(np.median(noise)), ROUNDING_NOISE)))
@@ -231,7 +228,11 @@ def _full(blocks: Mask, factor: int, shape: tuple[int, ...]) -> Mask:
     low, right = shape[0] - blocks.shape[0] * factor, shape[1] - blocks.shape[1] * factor
     size = (blocks.shape[1] * factor, blocks.shape[0] * factor)
     pixels = cv2.resize(blocks, size, interpolation=cv2.INTER_NEAREST)
-    return np.pad(pixels, ((0, low), (0, right)), mode="edge") if low or right else pixels
+    return np.asarray(np.pad(pixels, ((0, low), (0, right)), mode="edge") if low or right else pixels, dtype=np.uint8)
+
+
+def _apart(one: Image, other: Image) -> Image:
+    return np.asarray(cv2.absdiff(one, other), dtype=np.float32)
 
 
 def _median(pictures: Sequence[Image]) -> Image:
@@ -253,7 +254,7 @@ def texture(level: Mask) -> Mask:
 
 
 def _eight_bit(picture: Picture) -> Mask:
-    return picture if picture.dtype == np.uint8 else cv2.convertScaleAbs(picture)
+    return np.asarray(picture if picture.dtype == np.uint8 else cv2.convertScaleAbs(picture), dtype=np.uint8)
 
 
 def row_gains(small: Image, inverse: Image) -> Image:
@@ -282,10 +283,10 @@ def row_gains(small: Image, inverse: Image) -> Image:
     middle = middle_of(told)
     reach = max(5 * MAD_TO_SD * middle_of(np.abs(told - middle)), 0.02 * middle)
     fair = cv2.inRange(ratio, max(middle - reach, 1e-6), middle + reach)
-    total = cv2.reduce(cv2.multiply(ratio, fair, scale=1 / 255, dtype=cv2.CV_32F), 1, cv2.REDUCE_SUM)
-    count = cv2.reduce(fair, 1, cv2.REDUCE_SUM, dtype=cv2.CV_32F) / np.float32(255)
-    total = cv2.GaussianBlur(total, (1, 0), sigmaX=0.1, sigmaY=ROW_SMOOTHING)
-    count = cv2.GaussianBlur(count, (1, 0), sigmaX=0.1, sigmaY=ROW_SMOOTHING)
+    sums = cv2.reduce(cv2.multiply(ratio, fair, scale=1 / 255, dtype=cv2.CV_32F), 1, cv2.REDUCE_SUM)
+    counts = cv2.reduce(fair, 1, cv2.REDUCE_SUM, dtype=cv2.CV_32F) / np.float32(255)
+    total = cv2.GaussianBlur(sums, (1, 0), sigmaX=0.1, sigmaY=ROW_SMOOTHING)
+    count = cv2.GaussianBlur(counts, (1, 0), sigmaX=0.1, sigmaY=ROW_SMOOTHING)
     gains = np.where(count > 1.0, total / np.maximum(count, 1.0), middle)
     return gains[:, 0].astype(np.float32)
 

@@ -11,7 +11,7 @@ import numpy as np
 from settlelab.errors import RecordingError
 from settlelab.study.model import Camera, Column
 from settlelab.video import flags
-from settlelab.video.background import background_of
+from settlelab.video.background import Background, background_of
 from settlelab.video.clock import frame_times
 from settlelab.video.falls import Points, counting_points, drifting, why_not_a_fall
 from settlelab.video.linking import Linker, Sighting
@@ -19,7 +19,7 @@ from settlelab.video.model import Clock, FloatArray, Track, TrackedRecording
 from settlelab.video.optics import scale_of
 from settlelab.video.overlaps import alone, gaps_of, joint_views, unseen_ends
 from settlelab.video.silhouettes import Silhouette
-from settlelab.video.source import open_recording
+from settlelab.video.source import Source, open_recording, single_threaded
 from settlelab.video.stitching import stitched
 from settlelab.video.survey import measured, survey
 from settlelab.video.turning import Turn
@@ -60,17 +60,11 @@ def follow_falls(video: Path, *, camera: Camera, column: Column | None = None) -
     source = open_recording(video)
     if not source.has_clock and camera.frame_rate is None:
         raise RecordingError(f"{video}: a folder of pictures has no clock; state the true capture rate (frame rate)")
-    first = survey(source)
-    scene = background_of(first.samples, source.black)
-    first.samples.clear()
+    with single_threaded():
+        seen, scene = _look(source)
     turn = Turn.to_gravity(camera.gravity, source.rotation, source.size)
     still = turn.picture(scene.level)
     scale, notes = scale_of(camera, still, video.name)
-    seen = _Seen(
-        container_time=np.array(first.container_time),
-        number=np.array(first.number),
-        silhouettes=measured(first, source, scene),
-    )
     times, clock = frame_times(seen.container_time, seen.number, camera.frame_rate)
     walls, wall_notes = _walls(still, scale.value, column, video.name)
     falls, refused = _judged(_paths(seen, turn, times * clock.frame_rate), seen, times, clock, walls)
@@ -89,6 +83,19 @@ def follow_falls(video: Path, *, camera: Camera, column: Column | None = None) -
         walls=walls,
         notes=tuple(notes),
     )
+
+
+def _look(source: Source) -> tuple[_Seen, Background]:
+    """Measure every object of every frame."""
+    first = survey(source)
+    scene = background_of(first.samples, source.black)
+    first.samples.clear()
+    seen = _Seen(
+        container_time=np.array(first.container_time),
+        number=np.array(first.number),
+        silhouettes=measured(first, source, scene),
+    )
+    return seen, scene
 
 
 def _paths(seen: _Seen, turn: Turn, ticks: FloatArray) -> list[list[Sighting]]:

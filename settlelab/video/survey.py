@@ -15,7 +15,17 @@ import cv2
 import numpy as np
 from numpy.typing import NDArray
 
-from settlelab.video.background import Background, Coarse, Image, Mask, Sampler, coarse_of, row_gains
+from settlelab.video.background import (
+    Background,
+    Coarse,
+    Image,
+    Mask,
+    Sampler,
+    coarse_of,
+    detection_factor,
+    row_gains,
+    shrink,
+)
 from settlelab.video.silhouettes import Silhouette, silhouettes, window_of, without_marks
 from settlelab.video.source import Frame, Picture, Source, read_ahead
 
@@ -53,36 +63,42 @@ class Survey:
             yield range(first, end), scene
 
 
+def _shrunk(source: Source) -> Iterator[tuple[Frame, Image]]:
+    """Every frame with its small picture; that is cheap while the frame is fresh in the processor's cache."""
+    factor = detection_factor(source.size)
+    return read_ahead((frame, shrink(frame.picture, factor, source.black)) for frame in source.frames())
+
+
 def survey(source: Source) -> Survey:
     """Look through a recording once."""
     seen, sampler = Survey(), Sampler()
-    waiting: list[Frame] = []
+    waiting: list[tuple[Picture, Image]] = []
     stored = 0
-    for count, frame in enumerate(read_ahead(source.frames())):
+    for count, (frame, small) in enumerate(_shrunk(source)):
         seen.container_time.append(frame.time)
         seen.number.append(frame.number)
         sampler.add(count, frame.picture)
-        waiting.append(frame)
+        waiting.append((frame.picture, small))
         if not seen.scenes:
             if len(waiting) < FIRST_FRAMES:
                 continue
-            seen.scenes.append((0, coarse_of([one.picture for one in waiting], source.black)))
+            seen.scenes.append((0, coarse_of([picture for picture, _ in waiting], source.black)))
         elif count in REVISIONS:
             few = sampler.kept[:: 1 + len(sampler.kept) // FIRST_FRAMES]
             seen.scenes.append((count, coarse_of(few, source.black)))
-        stored += sum(_keep(one.picture, seen, stored) for one in waiting)
+        stored += sum(_keep(*one, seen, stored) for one in waiting)
         waiting.clear()
     if waiting:
-        seen.scenes.append((0, coarse_of([one.picture for one in waiting], source.black)))
-        stored += sum(_keep(one.picture, seen, stored) for one in waiting)
+        seen.scenes.append((0, coarse_of([picture for picture, _ in waiting], source.black)))
+        stored += sum(_keep(*one, seen, stored) for one in waiting)
     seen.samples = sampler.kept
     return seen
 
 
-def _keep(picture: Picture, seen: Survey, stored: int) -> int:
+def _keep(picture: Picture, small: Image, seen: Survey, stored: int) -> int:
     """Add what changed in a frame to what was seen; its bytes."""
     scene = seen.scenes[-1][1]
-    small, gains = scene.look(picture)
+    gains = row_gains(small, scene.inverse)
     cuts = []
     if stored < STORE_BYTES:
         for left, top, right, bottom in changed_boxes(scene.change(small, gains), scene.factor, picture.shape):
@@ -112,9 +128,9 @@ def measured(seen: Survey, source: Source, background: Background) -> list[list[
             seen.cuts[index] = []
     seen.cuts.clear()
     if again:
-        for index, frame in enumerate(read_ahead(source.frames())):
+        for index, (frame, small) in enumerate(_shrunk(source)):
             if index in again:
-                small, gains = scene.look(frame.picture)
+                gains = row_gains(small, scene.inverse)
                 boxes = changed_boxes(scene.change(small, gains), scene.factor, frame.picture.shape)
                 cuts = [Cut(box, frame.picture[box[1] : box[3], box[0] : box[2]]) for box in boxes]
                 found[index] = _objects(cuts, gains, background)
