@@ -45,7 +45,8 @@ def command(
 ) -> None:
     """Follow the falls in one recording.
 
-    Writes tracks, terminal velocities and an overlay picture. VIDEO is a video file or a folder of numbered PNG or TIFF pictures (which needs --frame-rate).
+    Writes tracks, terminal velocities and an overlay picture. VIDEO is a video file or a folder of numbered PNG or TIFF
+    pictures (which needs --frame-rate).
     """
     from settlelab.measure import measure_falls, track_table
     from settlelab.measure.model import Drop, TrackPoint

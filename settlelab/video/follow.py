@@ -13,7 +13,7 @@ from settlelab.study.model import Camera, Column
 from settlelab.video import flags
 from settlelab.video.background import Background, background_of
 from settlelab.video.clock import frame_times
-from settlelab.video.falls import Points, counting_points, drifting, why_not_a_fall
+from settlelab.video.falls import Points, counting_points, drifting, reflections, why_not_a_fall
 from settlelab.video.linking import Linker, Sighting
 from settlelab.video.model import Clock, FloatArray, Track, TrackedRecording
 from settlelab.video.optics import scale_of
@@ -140,6 +140,9 @@ def _judged(
     series = {index: Points(kept[index], ticks) for index, reason in enumerate(reasons) if reason == ""}
     for index in drifting(series):
         reasons[index] = "drifts with the fluid: far slower than its size explains"
+        del series[index]
+    for index in reflections(series):
+        reasons[index] = "reflection of another object in the column wall"
         del series[index]
     falls, refused = [], []
     for index, reason in enumerate(reasons):
