@@ -13,7 +13,7 @@ from settlelab.study.model import Camera, Column
 from settlelab.video import flags
 from settlelab.video.background import Background, background_of
 from settlelab.video.clock import frame_times
-from settlelab.video.falls import Points, counting_points, drifting, reflections, why_not_a_fall
+from settlelab.video.falls import Points, counting_points, drifting, reflections, shorter_pieces, why_not_a_fall
 from settlelab.video.linking import Linker, Sighting
 from settlelab.video.model import Clock, FloatArray, Track, TrackedRecording
 from settlelab.video.optics import scale_of
@@ -143,6 +143,9 @@ def _judged(
         del series[index]
     for index in reflections(series):
         reasons[index] = "reflection of another object in the column wall"
+        del series[index]
+    for index in shorter_pieces(series):
+        reasons[index] = "another piece of a fall that is counted"
         del series[index]
     falls, refused = [], []
     for index, reason in enumerate(reasons):
