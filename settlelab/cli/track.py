@@ -33,7 +33,7 @@ ABOVE_ZERO = click.FloatRange(min=0, min_open=True)
     show_default=True,
     help="Side of the picture towards which things fall.",
 )
-@click.option("--bore", type=ABOVE_ZERO, help="Inner diameter of the column, mm; lets the walls be found.")
+@click.option("--bore", type=ABOVE_ZERO, help="Inner diameter of the column, mm (optional): finds its walls.")
 @click.option("--out", type=click.Path(path_type=Path, file_okay=False), required=True, help="Folder for the results.")
 def command(
     video: Path,
@@ -43,9 +43,10 @@ def command(
     bore: float | None,
     out: Path,
 ) -> None:
-    """Follow the falls in one recording: tracks, terminal velocities, overlay picture.
+    """Follow the falls in one recording.
 
-    VIDEO is a video file or a folder of numbered PNG or TIFF pictures (which needs --frame-rate).
+    Writes tracks, terminal velocities and an overlay picture. VIDEO is a video file or a folder of numbered PNG or TIFF
+    pictures (which needs --frame-rate).
     """
     from settlelab.measure import measure_falls, track_table
     from settlelab.measure.model import Drop, TrackPoint

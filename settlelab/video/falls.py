@@ -20,6 +20,12 @@ WHOLE = 0.95  # of the area a little further on: a silhouette below it at an end
 SMOOTHED_TRAVEL = 2.0  # px, over which speed is judged
 WANDER = 0.01  # of the way along gravity
 WANDER_FLOOR = 0.2  # px
+BESIDE = 0.5  # diameters along gravity, by which a reflection may lie above or below its object
+AS_FAST, AS_STRAIGHT = 0.004, 0.01  # of the speed: along gravity, and of the mirrored one across
+FAINTER = 0.75  # of the contrast of the object
+TOGETHER = 0.8  # of its frames, in which the object is seen too
+SAME_SPEED, SAME_SIZE = 0.03, 0.25  # relative differences between two pieces of one fall
+MISS_SHARE = 0.02  # of the way between the two, by which one may miss the other
 FAR_SLOWER, UNEXPLAINED = 0.1, 0.4  # see `drifting`
 SLOW = 0.5  # px per frame interval
 EVEN = 0.05  # of the way
@@ -37,6 +43,7 @@ class Points:
         self.y = np.array([one.y for one in path])
         self.area = np.array([one.area for one in path])
         self.cut = np.array([one.cut for one in path])
+        self.contrast = np.array([one.contrast for one in path])
 
     @property
     def diameter(self) -> float:
@@ -181,3 +188,62 @@ def drifting(all_falls: Mapping[int, Points]) -> set[int]:
             for other, that in all_falls.items()
         )
     }
+
+
+def reflections(all_falls: Mapping[int, Points]) -> set[int]:
+    """Which falls are reflections of others in a side wall of the column.
+
+    A reflection is seen while its object is, at the same height and speed, moves across the other way, and is fainter.
+    Two particles side by side hardly agree in speed to 0.4 % and in height to half a diameter all the way.
+    """
+    return {
+        index
+        for index, points in all_falls.items()
+        if any(_mirrors(points, other) for number, other in all_falls.items() if number != index)
+    }
+
+
+def _mirrors(points: Points, other: Points) -> bool:
+    _, mine, theirs = np.intersect1d(points.index, other.index, assume_unique=True, return_indices=True)
+    if len(mine) < max(FEWEST_POINTS, TOGETHER * len(points.index)):
+        return False
+    if np.median(np.abs(points.contrast)) > FAINTER * np.median(np.abs(other.contrast)):
+        return False
+    beside = np.abs(points.y[mine] - other.y[theirs])
+    if beside.max() > BESIDE * max(points.diameter, other.diameter):
+        return False
+    time = points.time[mine] - points.time[mine].mean()
+    down, across = time @ other.y[theirs] / (time @ time), time @ (points.x[mine] + other.x[theirs]) / (time @ time)
+    slower = time @ (points.y[mine] - other.y[theirs]) / (time @ time)
+    return bool(abs(slower) < AS_FAST * abs(down) and abs(across) < AS_STRAIGHT * abs(down))
+
+
+def shorter_pieces(all_falls: Mapping[int, Points]) -> set[int]:
+    """Which falls are pieces of others: in a crowd one may be lost and found again too differently to be joined.
+
+    Two pieces never seen together are of one fall where one, going on at its speed, meets the other at its time within
+    a diameter. The one with more points stands for the fall.
+    """
+    by_length = sorted(all_falls, key=lambda index: -len(all_falls[index].index))
+    pieces: set[int] = set()
+    for rank, index in enumerate(by_length):
+        longer = (all_falls[other] for other in by_length[:rank] if other not in pieces)
+        if any(_same_fall(other, all_falls[index]) for other in longer):
+            pieces.add(index)
+    return pieces
+
+
+def _same_fall(one: Points, other: Points) -> bool:
+    if one.index[0] <= other.index[-1] and other.index[0] <= one.index[-1]:
+        return False
+    if abs(one.diameter / other.diameter - 1) > SAME_SIZE or np.median(one.contrast) * np.median(other.contrast) < 0:
+        return False
+    middle, then = one.time.mean(), other.time.mean()
+    time = one.time - middle
+    vx, vy = time @ one.x / (time @ time), time @ one.y / (time @ time)
+    theirs = other.time - then
+    if abs(theirs @ other.y / (theirs @ theirs) - vy) > SAME_SPEED * abs(vy):
+        return False
+    across = other.x.mean() - one.x.mean() - vx * (then - middle)
+    down = other.y.mean() - one.y.mean() - vy * (then - middle)
+    return bool(np.hypot(across, down) < one.diameter + MISS_SHARE * abs(vy * (then - middle)))

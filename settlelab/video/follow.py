@@ -11,20 +11,19 @@ import numpy as np
 from settlelab.errors import RecordingError
 from settlelab.study.model import Camera, Column
 from settlelab.video import flags
-from settlelab.video.background import Background, background_of, full_rows, row_gains, sample, shrink
+from settlelab.video.background import Background, background_of
 from settlelab.video.clock import frame_times
-from settlelab.video.falls import Points, counting_points, drifting, why_not_a_fall
+from settlelab.video.falls import Points, counting_points, drifting, reflections, shorter_pieces, why_not_a_fall
 from settlelab.video.linking import Linker, Sighting
 from settlelab.video.model import Clock, FloatArray, Track, TrackedRecording
 from settlelab.video.optics import scale_of
 from settlelab.video.overlaps import alone, gaps_of, joint_views, unseen_ends
-from settlelab.video.silhouettes import Silhouette, changed_boxes, silhouettes, window_of, without_marks
-from settlelab.video.source import Frame, Source, open_recording, read_ahead
+from settlelab.video.silhouettes import Silhouette
+from settlelab.video.source import Source, open_recording, single_threaded
 from settlelab.video.stitching import stitched
+from settlelab.video.survey import measured, survey
 from settlelab.video.turning import Turn
 from settlelab.video.walls import find_walls
-
-WINDOW_MARGIN = 10  # px around what changed
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -59,13 +58,13 @@ def follow_falls(video: Path, *, camera: Camera, column: Column | None = None) -
         The recording cannot be opened or decoded, has no clock, or its scale is not found.
     """
     source = open_recording(video)
-    if np.isnan(next(source.frames()).time) and camera.frame_rate is None:
+    if not source.has_clock and camera.frame_rate is None:
         raise RecordingError(f"{video}: a folder of pictures has no clock; state the true capture rate (frame rate)")
-    scene = background_of(sample(source.frames()), source.black)
+    with single_threaded():
+        seen, scene = _look(source)
     turn = Turn.to_gravity(camera.gravity, source.rotation, source.size)
     still = turn.picture(scene.level)
     scale, notes = scale_of(camera, still, video.name)
-    seen = _look(source, scene)
     times, clock = frame_times(seen.container_time, seen.number, camera.frame_rate)
     walls, wall_notes = _walls(still, scale.value, column, video.name)
     falls, refused = _judged(_paths(seen, turn, times * clock.frame_rate), seen, times, clock, walls)
@@ -86,26 +85,17 @@ def follow_falls(video: Path, *, camera: Camera, column: Column | None = None) -
     )
 
 
-def _look(source: Source, scene: Background) -> _Seen:
+def _look(source: Source) -> tuple[_Seen, Background]:
     """Measure every object of every frame."""
-    times, numbers, found = [], [], []
-    for frame in read_ahead(source.frames()):
-        times.append(frame.time)
-        numbers.append(frame.number)
-        found.append(_objects(frame, scene))
-    return _Seen(container_time=np.array(times), number=np.array(numbers), silhouettes=found)
-
-
-def _objects(frame: Frame, scene: Background) -> list[Silhouette]:
-    small = shrink(frame.picture, scene.factor) - np.float32(scene.black)
-    gains = row_gains(small, scene.small)
-    every_row = None
-    found: list[Silhouette] = []
-    for box in changed_boxes(small, gains, scene, WINDOW_MARGIN):
-        if every_row is None:
-            every_row = full_rows(gains, scene.factor, frame.picture.shape[0])
-        found += silhouettes(window_of(frame.picture, box, every_row, scene))
-    return without_marks(found)
+    first = survey(source)
+    scene = background_of(first.samples, source.black)
+    first.samples.clear()
+    seen = _Seen(
+        container_time=np.array(first.container_time),
+        number=np.array(first.number),
+        silhouettes=measured(first, source, scene),
+    )
+    return seen, scene
 
 
 def _paths(seen: _Seen, turn: Turn, ticks: FloatArray) -> list[list[Sighting]]:
@@ -150,6 +140,12 @@ def _judged(
     series = {index: Points(kept[index], ticks) for index, reason in enumerate(reasons) if reason == ""}
     for index in drifting(series):
         reasons[index] = "drifts with the fluid: far slower than its size explains"
+        del series[index]
+    for index in reflections(series):
+        reasons[index] = "reflection of another object in the column wall"
+        del series[index]
+    for index in shorter_pieces(series):
+        reasons[index] = "another piece of a fall that is counted"
         del series[index]
     falls, refused = [], []
     for index, reason in enumerate(reasons):

@@ -7,15 +7,23 @@ blur of the lens nor the position within a pixel biases them.
 
 from __future__ import annotations
 
-from collections.abc import Iterator
 from dataclasses import dataclass
-from typing import Any
 
 import cv2
 import numpy as np
 from numpy.typing import NDArray
 
-from settlelab.video.background import DARKEST, Background, Image, texture
+from settlelab.video.background import (
+    CERTAIN,
+    DARKEST,
+    FAINTEST,
+    SEEN,
+    TEXTURE_SHARE,
+    Background,
+    Image,
+    full_rows,
+    middle_of,
+)
 
 FloatArray = NDArray[np.float64]
 Mask = NDArray[np.uint8]
@@ -23,14 +31,10 @@ Mask = NDArray[np.uint8]
 SMOOTHING = 1.2  # px, standard deviation of the Gaussian before the threshold
 NOISE_LEFT = 0.235  # of white noise after that smoothing: 1 / (2 sqrt(pi) 1.2)
 LIGHT_SMOOTHING = 0.7  # px, before levels are read off
-SEEN = 4.5  # times the smoothed noise: a pixel belongs to an object
-CERTAIN = 1.4  # times that limit: its peak makes it one
-FAINTEST = 1.5  # grey levels; below that compression leaves marks of its own
 APART = 0.25  # of the peak: what is below lies between two objects
 SMALLEST_SHARE = 0.05  # of the largest of objects side by side; less is a shred of its edge
 REACH = 3  # px, how far beyond the mask an object's light is summed
 INSIDE = 3  # px from the edge of the half-level silhouette: certainly covered
-TEXTURE_SHARE = 0.08  # of the difference of neighbouring pixels: what a shake of a tenth of a pixel changes
 SMALLEST_AREA = 3.0  # px2
 MARK_CONTRAST = 0.05  # of a strong object's contrast: compression leaves marks that faint around it
 MARK_REACH = 32.0  # px from its edge, two blocks of the codec
@@ -68,25 +72,38 @@ class Window:
 
 
 def window_of(picture: NDArray[np.generic], box: tuple[int, int, int, int], gains: Image, scene: Background) -> Window:
-    """Cut the box (left, top, right, bottom) out of a frame; `gains` is the brightness of each full row."""
+    """Set a part of a frame, cut out at the box (left, top, right, bottom), against the background.
+
+    `gains` is the brightness of each small row of the frame.
+    """
     left, top, right, bottom = box
-    part = picture[top:bottom, left:right].astype(np.float32) - np.float32(scene.black)
-    expected = scene.level[top:bottom, left:right] * gains[top:bottom, None]
+    coarse = scene.coarse
+    part = picture.astype(np.float32)
+    part -= np.float32(coarse.black)
+    expected = scene.level[top:bottom, left:right] * full_rows(gains, coarse.factor, top, bottom)[:, None]
     taken = expected - part
-    rim = np.concatenate([taken[:2].ravel(), taken[-2:].ravel(), taken[:, :2].ravel(), taken[:, -2:].ravel()])
-    middle = np.median(rim)
-    noise = scene.noise[top:bottom, left:right]
-    quiet = rim[np.abs(rim - middle) < 3 * np.median(noise)]
+    noise = cv2.resize(_blocks(scene, box), (right - left, bottom - top), interpolation=cv2.INTER_NEAREST)
+    rim = np.concatenate([taken[:2].ravel(), taken[-2:].ravel(), taken[2:-2, :2].ravel(), taken[2:-2, -2:].ravel()])
+    quiet = rim[np.abs(rim - middle_of(rim)) < 3 * noise.mean()]
     taken -= quiet.mean() if len(quiet) > len(rim) // 2 else 0.0  # a lamp that changed here only
-    height, width = picture.shape
-    limit = np.maximum(SEEN * NOISE_LEFT * noise, FAINTEST) + TEXTURE_SHARE * texture(expected)
+    height, width = scene.level.shape
+    limit = np.maximum(SEEN * NOISE_LEFT * noise, FAINTEST)
+    limit += np.float32(TEXTURE_SHARE) * scene.texture[top:bottom, left:right]
     return Window(left=left, top=top, taken=taken, scene=expected, limit=limit, size=(width, height))
+
+
+def _blocks(scene: Background, box: tuple[int, int, int, int]) -> Image:
+    """Noise of the blocks of a box."""
+    left, top, right, bottom = (edge // scene.coarse.factor for edge in box)
+    return scene.noise[top : max(bottom, top + 1), left : max(right, left + 1)]
 
 
 def silhouettes(window: Window) -> list[Silhouette]:
     """Every object of a window, in the order of the picture."""
-    smooth = np.asarray(cv2.GaussianBlur(window.taken, (0, 0), LIGHT_SMOOTHING), dtype=np.float32)
     change = np.abs(cv2.GaussianBlur(window.taken, (0, 0), SMOOTHING)) / window.limit
+    if change.max() < CERTAIN:
+        return []
+    smooth = np.asarray(cv2.GaussianBlur(window.taken, (0, 0), LIGHT_SMOOTHING), dtype=np.float32)
     count, labels, stats, _ = cv2.connectedComponentsWithStats((change > 1).astype(np.uint8), connectivity=8)
     found = []
     for label in range(1, count):
@@ -188,10 +205,11 @@ def _lamp(scene: Image) -> Image:
 def _plateau(change: Image, mask: Mask) -> float:
     """Change of a pixel that is wholly covered: the middle of the inside, or the peak where there is no inside."""
     values = change[mask > 0]
-    peak = float(np.quantile(values, 0.95)) if len(values) > 40 else float(values.max())
+    values.sort()
+    peak = float(values[int(0.95 * len(values))]) if len(values) > 40 else float(values[-1])
     core = _filled(((change > peak / 2) & (mask > 0)).astype(np.uint8))
     inside = change[cv2.erode(core, _disc(INSIDE), borderValue=0) > 0]
-    return float(np.median(inside)) if len(inside) >= 5 and np.median(inside) > peak / 2 else peak
+    return max(middle_of(inside), peak / 2) if len(inside) >= 5 else peak
 
 
 def _outline(coverage: Image) -> tuple[FloatArray, float]:
@@ -234,51 +252,3 @@ def _filled(mask: Mask) -> Mask:
 def _disc(radius: int) -> Mask:
     side = 2 * radius + 1
     return np.asarray(cv2.getStructuringElement(cv2.MORPH_ELLIPSE, (side, side)), dtype=np.uint8)
-
-
-def changed_boxes(small: Image, gains: Image, scene: Background, margin: int) -> Iterator[tuple[int, int, int, int]]:
-    """Boxes (left, top, right, bottom) of the full picture in which something differs from the background.
-
-    Overlapping boxes are joined, so that no object is met twice.
-    """
-    difference = np.abs(small - scene.small * gains[:, None])
-    limit = np.maximum(SEEN * scene.small_noise, FAINTEST) + TEXTURE_SHARE / scene.factor * scene.small_texture
-    mask = (difference > limit).astype(np.uint8)
-    if not mask.any():
-        return
-    reach = margin // scene.factor + 1
-    joined = cv2.dilate(mask, np.ones((2 * reach + 1, 2 * reach + 1), np.uint8))
-    count, _, stats, _ = cv2.connectedComponentsWithStats(joined, connectivity=8)
-    height, width = scene.level.shape
-    for left, top, wide, high in _disjoint(stats[1:count, :4]):
-        yield (
-            left * scene.factor,
-            top * scene.factor,
-            min((left + wide) * scene.factor + scene.factor * (left + wide == small.shape[1]), width),
-            min((top + high) * scene.factor + scene.factor * (top + high == small.shape[0]), height),
-        )
-
-
-def _disjoint(boxes: NDArray[Any]) -> list[tuple[int, int, int, int]]:
-    """Boxes (left, top, width, height), those that overlap replaced by their common hull until none do."""
-    waiting = [tuple(int(value) for value in box) for box in boxes]
-    done: list[tuple[int, int, int, int]] = []
-    while waiting:
-        left, top, wide, high = waiting.pop(0)
-        for index, (other_left, other_top, other_wide, other_high) in enumerate(done):
-            apart = (
-                left >= other_left + other_wide
-                or other_left >= left + wide
-                or top >= other_top + other_high
-                or other_top >= top + high
-            )
-            if not apart:
-                del done[index]
-                first_x, first_y = min(left, other_left), min(top, other_top)
-                last_x = max(left + wide, other_left + other_wide)
-                last_y = max(top + high, other_top + other_high)
-                waiting.insert(0, (first_x, first_y, last_x - first_x, last_y - first_y))
-                break
-        else:
-            done.append((left, top, wide, high))
-    return sorted(done, key=lambda box: (box[1], box[0]))

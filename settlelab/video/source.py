@@ -11,7 +11,7 @@ from concurrent.futures import ThreadPoolExecutor
 from contextlib import contextmanager
 from dataclasses import dataclass, field
 from pathlib import Path
-from typing import Any, NamedTuple, Protocol
+from typing import Any, NamedTuple, Protocol, TypeVar
 
 import cv2
 import numpy as np
@@ -19,13 +19,14 @@ from numpy.typing import NDArray
 
 from settlelab.errors import RecordingError
 
+Item = TypeVar("Item")
 Picture = NDArray[Any]  # (height, width), uint8 or float32 with the range of uint8
 
 PICTURE_SUFFIXES = frozenset({".png", ".tif", ".tiff"})
 LUMA_8_BIT = frozenset({"I420", "Y800"})  # undecoded luma of any other format is a wrong picture without a word
 LIMITED_RANGE_BLACK = 16.0  # ITU-R BT.601 and BT.709: luma 16..235
 SILENT = 0  # OpenCV's LOG_LEVEL_SILENT
-AHEAD = 4  # frames decoded before they are needed
+AHEAD = 2  # frames decoded before they are needed
 TRUNCATED_SHARE = 0.98  # of the frames that the header promises
 
 # FFmpeg's own messages off; read once, when the first video is opened, so it is set before
@@ -48,6 +49,7 @@ class Source(Protocol):
     rotation: int  # degrees clockwise that the container asks for before showing
     expected_frames: int  # a guess, for progress only
     black: float  # grey level of no light
+    has_clock: bool
     notes: list[str]
 
     def frames(self) -> Iterator[Frame]:
@@ -80,6 +82,7 @@ class VideoFile:
     expected_frames: int
     black: float
     undecoded_luma: bool
+    has_clock: bool = True
     notes: list[str] = field(default_factory=list)
 
     def frames(self) -> Iterator[Frame]:
@@ -113,6 +116,7 @@ class PictureFolder:
     expected_frames: int
     rotation: int = 0
     black: float = 0.0
+    has_clock: bool = False
     notes: list[str] = field(default_factory=list)
 
     def frames(self) -> Iterator[Frame]:
@@ -127,8 +131,8 @@ class PictureFolder:
             yield Frame(number, float("nan"), picture)
 
 
-def read_ahead(frames: Iterator[Frame]) -> Iterator[Frame]:
-    """The same frames, decoded in another thread while those before are worked on."""
+def read_ahead(frames: Iterator[Item]) -> Iterator[Item]:
+    """The same frames, decoded and prepared in another thread while those before are worked on."""
     with ThreadPoolExecutor(1) as decoder:
         waiting = deque(decoder.submit(next, frames, None) for _ in range(AHEAD))
         while (frame := waiting.popleft().result()) is not None:
@@ -154,6 +158,7 @@ def _open_file(path: Path) -> VideoFile:
         expected = max(0, int(capture.get(cv2.CAP_PROP_FRAME_COUNT)))
     black = 0.0
     if luma:
+        # opened anew: switched off in the middle, the conversion leaves other grey levels behind
         with _capture(path, undecoded_luma=True) as capture:
             there, plain = capture.read()
         luma = there and plain.shape[:2] == shown.shape[:2]
@@ -186,6 +191,17 @@ def _capture(path: Path, *, undecoded_luma: bool = False) -> Iterator[cv2.VideoC
     finally:
         capture.release()
         log.setLogLevel(before)
+
+
+@contextmanager
+def single_threaded() -> Iterator[None]:
+    """OpenCV's own operations on one thread: on small pictures its others only get in the way of the decoder."""
+    before = cv2.getNumThreads()
+    cv2.setNumThreads(1)
+    try:
+        yield
+    finally:
+        cv2.setNumThreads(before)
 
 
 def _four_letters(code: float) -> str:

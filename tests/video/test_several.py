@@ -61,6 +61,18 @@ def test_a_second_particle_on_the_same_line_is_not_taken_for_the_first(tmp_path:
     assert tracked.falls[0].frame[-1] < 60
 
 
+@pytest.mark.parametrize(("speed", "light", "is_reflection"), [(4.0, 0.6, True), (4.1, 0.6, False), (4.0, 0.2, False)])
+def test_a_reflection_in_the_wall_is_no_fall(speed: float, light: float, is_reflection: bool, tmp_path: Path) -> None:
+    # mirrored about x = 125: as fast, fainter, drifting the other way
+    discs = [Disc(x=100, y=-20, diameter=14, vx=0.05, vy=4.0)]
+    discs.append(Disc(x=150, y=-20, diameter=12, vx=-0.05, vy=speed, light=light))
+    tracked = followed(Scene(discs=discs), tmp_path)
+    assert len(tracked.falls) == (1 if is_reflection else 2)
+    reasons = {track.reason for track in tracked.refused}
+    assert ("reflection of another object in the column wall" in reasons) == is_reflection
+    assert min(velocities(tracked)) == pytest.approx(4.0, rel=1e-3)
+
+
 def test_a_cloud(tmp_path: Path) -> None:
     random = np.random.default_rng(11)
     discs = [
