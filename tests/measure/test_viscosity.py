@@ -106,7 +106,7 @@ def test_uncertainty_by_monte_carlo() -> None:
     found = falling_ball_viscosity([drop])
     rng = np.random.default_rng(5)
     values = []
-    for _ in range(300):
+    for _ in range(150):
         diameter, density = 4e-3 + 5e-6 * rng.standard_normal(), 2500 + 5 * rng.standard_normal()
         moved = grain_of(Particle(name="S", diameter=Quantity(diameter), density=Quantity(density)), diameter)
         state = replace(fluid, density=fluid.density + 2 * rng.standard_normal())
@@ -119,7 +119,7 @@ def test_uncertainty_by_monte_carlo() -> None:
             ).value
         )
     drawn = sum(found.shares[name] for name in ("track", "scale", "clock", "size", "particle density", "fluid density"))
-    assert np.std(values) == pytest.approx(math.sqrt(drawn) * found.u, rel=0.15)
+    assert np.std(values) == pytest.approx(math.sqrt(drawn) * found.u, rel=0.2)
 
 
 def test_of_a_measured_study_beside_what_was_stated() -> None:

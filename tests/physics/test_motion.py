@@ -7,7 +7,7 @@ import pytest
 from hypothesis import assume, given, settings
 from hypothesis import strategies as st
 
-from settlelab.physics.drag import DRAG, terminal_velocity
+from settlelab.physics.drag import CRITICAL_YIELD_NUMBER, DRAG, terminal_velocity
 from settlelab.physics.motion import Body, Medium, fall_from_release, time_to_fraction
 from settlelab.physics.rheology import Rheology
 
@@ -103,7 +103,8 @@ def test_ends_at_terminal_velocity(diameter: float, density: float, flow_index: 
     body, medium = Body(diameter=diameter, density=density), Medium(density=1050.0, rheology=mud)
     law = DRAG["cheng-2009"].drag_coefficient
     settling = terminal_velocity(law, diameter=diameter, particle_density=density, fluid_density=1050, rheology=mud)
-    assume(not settling.held)
+    # close to the yield limit the approach takes many times the scale of 1/drag that the fall is followed for
+    assume(mud.yield_stress < 0.5 * CRITICAL_YIELD_NUMBER * G * diameter * (density - 1050))
     scale = float(settling.velocity) * (density + 525) / (G * (density - 1050))
     fall = fall_from_release(law, body, medium, np.linspace(0, 60 * scale, 50), wall_factor=wall)
     assert fall.velocity[-1] == pytest.approx(float(settling.velocity) * wall, rel=1e-5)
