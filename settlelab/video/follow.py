@@ -21,7 +21,7 @@ from settlelab.video.overlaps import alone, gaps_of, joint_views, unseen_ends
 from settlelab.video.silhouettes import Silhouette
 from settlelab.video.source import Source, open_recording, single_threaded
 from settlelab.video.stitching import stitched
-from settlelab.video.survey import measured, survey
+from settlelab.video.survey import MOST_OBJECTS, measured, survey
 from settlelab.video.turning import Turn
 from settlelab.video.walls import find_walls
 
@@ -33,6 +33,7 @@ class _Seen:
     container_time: FloatArray  # (N,) s
     number: np.ndarray  # (N,)
     silhouettes: list[list[Silhouette]]
+    passed_over: int  # frames with more objects than can be followed
 
 
 def follow_falls(video: Path, *, camera: Camera, column: Column | None = None) -> TrackedRecording:
@@ -69,6 +70,11 @@ def follow_falls(video: Path, *, camera: Camera, column: Column | None = None) -
     walls, wall_notes = _walls(still, scale.value, column, video.name)
     falls, refused = _judged(_paths(seen, turn, times * clock.frame_rate), seen, times, clock, walls)
     notes += [*source.notes, *_clock_notes(clock, video.name), *wall_notes]
+    if seen.passed_over:
+        notes.append(
+            f"{video.name}: {seen.passed_over} of {len(times)} frames passed over, with more than {MOST_OBJECTS} objects each: damaged"
+            " pictures, or the light changed"
+        )
     if not falls:
         notes.append(f"{video.name}: nothing fell in this recording")
     return TrackedRecording(
@@ -90,10 +96,12 @@ def _look(source: Source) -> tuple[_Seen, Background]:
     first = survey(source)
     scene = background_of(first.samples, source.black)
     first.samples.clear()
+    silhouettes = measured(first, source, scene)
     seen = _Seen(
         container_time=np.array(first.container_time),
         number=np.array(first.number),
-        silhouettes=measured(first, source, scene),
+        silhouettes=silhouettes,
+        passed_over=first.passed_over,
     )
     return seen, scene
 

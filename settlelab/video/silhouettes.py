@@ -7,7 +7,7 @@ blur of the lens nor the position within a pixel biases them.
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import cv2
 import numpy as np
@@ -34,6 +34,7 @@ LIGHT_SMOOTHING = 0.7  # px, before levels are read off
 APART = 0.25  # of the peak: what is below lies between two objects
 SMALLEST_SHARE = 0.05  # of the largest of objects side by side; less is a shred of its edge
 REACH = 3  # px, how far beyond the mask an object's light is summed
+SURROUNDINGS = REACH + 5  # px around the mask; nothing farther bears on an object
 INSIDE = 3  # px from the edge of the half-level silhouette: certainly covered
 SMALLEST_AREA = 3.0  # px2
 MARK_CONTRAST = 0.05  # of a strong object's contrast: compression leaves marks that faint around it
@@ -104,20 +105,44 @@ def silhouettes(window: Window) -> list[Silhouette]:
     if change.max() < CERTAIN:
         return []
     smooth = np.asarray(cv2.GaussianBlur(window.taken, (0, 0), LIGHT_SMOOTHING), dtype=np.float32)
+    lamp = _lamp(window.scene)
     count, labels, stats, _ = cv2.connectedComponentsWithStats((change > 1).astype(np.uint8), connectivity=8)
     found = []
     for label in range(1, count):
         if stats[label, cv2.CC_STAT_AREA] < SMALLEST_AREA:
             continue
-        mask = (labels == label).astype(np.uint8)
-        if change[mask > 0].max() < CERTAIN:
+        near = _around(stats[label], labels.shape)
+        mask = (labels[near] == label).astype(np.uint8)
+        if change[near][mask > 0].max() < CERTAIN:
             continue
-        for part in _parts(np.abs(smooth), mask, window.limit):
-            others = ((labels > 0) & (part == 0)).astype(np.uint8)
-            silhouette = _measure(window, smooth, part, others)
+        own = _part_of(window, near)
+        for part in _parts(np.abs(smooth[near]), mask, own.limit):
+            others = ((labels[near] > 0) & (part == 0)).astype(np.uint8)
+            silhouette = _measure(own, smooth[near], lamp[near], part, others)
             if silhouette is not None:
                 found.append(silhouette)
     return found
+
+
+def _around(stats: NDArray[np.int32], shape: tuple[int, ...]) -> tuple[slice, slice]:
+    """Rows and columns of a window that hold an object and all that is looked at to measure it."""
+    left, top, width, height = (int(value) for value in stats[:4])
+    return (
+        slice(max(top - SURROUNDINGS, 0), min(top + height + SURROUNDINGS, shape[0])),
+        slice(max(left - SURROUNDINGS, 0), min(left + width + SURROUNDINGS, shape[1])),
+    )
+
+
+def _part_of(window: Window, near: tuple[slice, slice]) -> Window:
+    rows, columns = near
+    return replace(
+        window,
+        left=window.left + columns.start,
+        top=window.top + rows.start,
+        taken=window.taken[near],
+        scene=window.scene[near],
+        limit=window.limit[near],
+    )
 
 
 def _parts(change: Image, mask: Mask, limit: Image) -> list[Mask]:
@@ -148,10 +173,10 @@ def _is_mark_of(one: Silhouette, other: Silhouette) -> bool:
     return bool(np.hypot(one.x - other.x, one.y - other.y) < reach)
 
 
-def _measure(window: Window, smooth: Image, mask: Mask, others: Mask) -> Silhouette | None:
+def _measure(window: Window, smooth: Image, lamp: Image, mask: Mask, others: Mask) -> Silhouette | None:
     """Coverage of every pixel of one object, and what follows from it; None for a trace of noise."""
     sign = 1.0 if smooth[mask > 0].sum() > 0 else -1.0
-    scene = np.maximum(window.scene, 1.0) if sign > 0 else _lamp(window.scene)
+    scene = np.maximum(window.scene, 1.0) if sign > 0 else lamp
     weight = sign * window.taken / scene
     plateau = _plateau(sign * smooth / scene, mask)
     if not plateau > 0:

@@ -33,6 +33,7 @@ FIRST_FRAMES = 8  # from which the scene is known first, and about as many later
 REVISIONS = frozenset(32 * 8**power for power in range(8))  # frames after which it is taken anew
 STORE_BYTES = 60_000_000  # of windows
 WINDOW_MARGIN = 10  # px around what changed
+MOST_OBJECTS = 200  # in a frame; more is a damaged picture or another light, and nothing to follow
 
 Box = tuple[int, int, int, int]  # left, top, right, bottom, px
 
@@ -55,6 +56,7 @@ class Survey:
     scenes: list[tuple[int, Coarse]] = field(default_factory=list)  # first frame of each, as known from there on
     samples: list[Picture] = field(default_factory=list)
     stored_until: int | None = None  # frame at which the store of windows was full
+    passed_over: int = 0  # frames with more objects than can be followed
 
     def epochs(self) -> Iterator[tuple[range, Coarse]]:
         """The frames looked at with each scene."""
@@ -124,7 +126,7 @@ def measured(seen: Survey, source: Source, background: Background) -> list[list[
             again.update(frames)
             continue
         for index in frames:
-            found[index] = _objects(seen.cuts[index], seen.gains[index] * now, background)
+            found[index] = _objects(seen.cuts[index], seen.gains[index] * now, background, seen)
             seen.cuts[index] = []
     seen.cuts.clear()
     if again:
@@ -133,17 +135,20 @@ def measured(seen: Survey, source: Source, background: Background) -> list[list[
                 gains = row_gains(small, scene.inverse)
                 boxes = changed_boxes(scene.change(small, gains), scene.factor, frame.picture.shape)
                 cuts = [Cut(box, frame.picture[box[1] : box[3], box[0] : box[2]]) for box in boxes]
-                found[index] = _objects(cuts, gains, background)
+                found[index] = _objects(cuts, gains, background, seen)
             if index >= max(again):
                 break
     return found
 
 
-def _objects(cuts: list[Cut], gains: Image, background: Background) -> list[Silhouette]:
-    """The objects in the windows of one frame."""
+def _objects(cuts: list[Cut], gains: Image, background: Background, seen: Survey) -> list[Silhouette]:
+    """The objects in the windows of one frame; none, and the frame counted as passed over, where they are too many."""
     found: list[Silhouette] = []
     for cut in cuts:
         found += silhouettes(window_of(cut.picture, cut.box, gains, background))
+        if len(found) > MOST_OBJECTS:
+            seen.passed_over += 1
+            return []
     return without_marks(found)
 
 

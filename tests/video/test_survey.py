@@ -2,9 +2,11 @@
 
 from __future__ import annotations
 
+import itertools
 from collections.abc import Iterator
 from pathlib import Path
 
+import cv2
 import numpy as np
 import pytest
 
@@ -64,3 +66,20 @@ def test_boxes_around_changes_are_disjoint_and_reach_the_rim() -> None:
     boxes = changed_boxes(changed, 4, (162, 123))
     assert boxes == [(8, 8, 68, 44), (104, 144, 123, 162)]
     assert changed_boxes(np.zeros_like(changed), 4, (162, 123)) == []
+
+
+def test_a_damaged_picture_is_passed_over_and_told(tmp_path: Path) -> None:
+    """Decoding errors scatter blocks over the picture; hundreds of objects are nothing to follow."""
+    rng = np.random.default_rng(8)
+    for number in range(24):
+        picture = rng.normal(180, 1, (480, 320))
+        picture[20 * number : 20 * number + 12, 150:162] = 40
+        if number == 9:
+            for y, x in itertools.product(range(12, 470, 18), range(12, 310, 18)):
+                picture[y : y + 6, x : x + 6] = rng.choice([30, 250])
+        cv2.imencode(".png", picture.astype(np.uint8))[1].tofile(tmp_path / f"{number:03}.png")
+    camera = Camera(metre_per_px=Quantity(1e-4), frame_rate=Quantity(50.0))
+    tracked = follow_falls(tmp_path, camera=camera)
+    assert any("1 of 24 frames passed over" in note for note in tracked.notes), tracked.notes
+    assert len(tracked.falls) == 1
+    assert 9 not in tracked.falls[0].frame
