@@ -72,8 +72,8 @@ def follow_falls(video: Path, *, camera: Camera, column: Column | None = None) -
     notes += [*source.notes, *_clock_notes(clock, video.name), *wall_notes]
     if seen.passed_over:
         notes.append(
-            f"{video.name}: {seen.passed_over} of {len(times)} frames passed over, with more than {MOST_OBJECTS} objects each: damaged"
-            " pictures, or the light changed"
+            f"{video.name}: {seen.passed_over} of {len(times)} frames passed over, with more than {MOST_OBJECTS}"
+            " objects each: damaged pictures, or the light changed"
         )
     if not falls:
         notes.append(f"{video.name}: nothing fell in this recording")
