@@ -19,6 +19,7 @@ from settlelab.calibrate.covariance import (
     Covariance,
     deviance,
     known_covariance,
+    law_effects,
     restricted_scatter,
 )
 from settlelab.calibrate.falls import Law, settle
@@ -136,11 +137,14 @@ def fit_form(form: Form, seen: Observations) -> LawFit:
         u = np.sqrt(np.diag(_parameter_covariance(state.jacobian, state.weights)))
         if np.all(np.abs(values - before) <= _SETTLED * u):
             break
+    law = form.law(values)
+    of_law = law_effects(seen, law, settle(law, seen.falls).velocity, form.law_u)
+    u = np.sqrt(np.diag(_parameter_covariance(state.jacobian, state.weights, of_law)))
     ends = np.array([(parameter.low, parameter.high) for parameter in form.parameters])
     at_bound = solution.at_bound | (values - u <= ends[:, 0]) | (values + u >= ends[:, 1])
     covariance = np.full((len(values), len(values)), np.nan)
     if len(free := np.flatnonzero(~at_bound)):
-        covariance[np.ix_(free, free)] = _parameter_covariance(state.jacobian[:, free], state.weights)
+        covariance[np.ix_(free, free)] = _parameter_covariance(state.jacobian[:, free], state.weights, of_law)
     return replace(state, values=values, covariance=covariance, at_bound=at_bound)
 
 
@@ -202,16 +206,24 @@ def _jacobian(form: Form, values: FloatArray, seen: Observations) -> FloatArray:
     return np.column_stack(columns)
 
 
-def _parameter_covariance(jacobian: FloatArray, weights: Covariance) -> FloatArray:
-    """Covariance of generalised least squares.
+def _parameter_covariance(jacobian: FloatArray, weights: Covariance, of_law: FloatArray | None = None) -> FloatArray:
+    """Covariance of generalised least squares, and what errors of the law (`law_effects`) add to it.
+
+    These have no part in the weights: a fit that knew of them would leave such deviations standing, where the
+    parameters may well take them up.
 
     Raises
     ------
     FitError
         The observations do not determine the parameters.
     """
-    turned = weights.whitening().apply(jacobian)
+    whitening = weights.whitening()
+    turned = whitening.apply(jacobian)
     size = np.linalg.norm(turned, axis=0)
     if np.any(size == 0) or np.linalg.cond(turned / size) > _ILL:
         raise FitError("the drops do not determine the parameters: their Reynolds numbers or shapes are too alike")
-    return np.asarray(np.linalg.inv((turned / size).T @ (turned / size)) / np.outer(size, size))
+    covariance = np.linalg.inv((turned / size).T @ (turned / size)) / np.outer(size, size)
+    if of_law is not None:
+        moved = covariance @ (turned.T @ whitening.apply(of_law))
+        covariance = covariance + moved @ moved.T
+    return np.asarray(covariance)

@@ -15,7 +15,7 @@ import numpy as np
 from settlelab.calibrate.falls import Law, published_law
 from settlelab.errors import FitError, did_you_mean
 from settlelab.physics.constants import FloatArray
-from settlelab.physics.drag import DRAG, scaled_drag
+from settlelab.physics.drag import DRAG, SPHERE_LAW_U, scaled_drag
 from settlelab.physics.registry import find
 
 __all__ = ["FORMS", "SPHERE_LAW", "Form", "Parameter", "Recipe", "build_form", "recipe"]
@@ -66,6 +66,7 @@ class Form:
     parameters: tuple[Parameter, ...]
     needs: tuple[str, ...]  # descriptors that every particle must have; `lot` is the number of its lot
     drag: Drag
+    law_u: float = 0.0  # relative standard uncertainty of the drag coefficients of the law it stands on
 
     @property
     def name(self) -> str:
@@ -159,6 +160,7 @@ def _stokes_newton(made_by: Recipe) -> Form:
         ),
         needs=(),
         drag=drag,
+        law_u=SPHERE_LAW_U,
     )
 
 
@@ -182,6 +184,7 @@ def _stokes_newton_power(made_by: Recipe) -> Form:
         ),
         needs=(descriptor,),
         drag=drag,
+        law_u=SPHERE_LAW_U,
     )
 
 
@@ -204,6 +207,7 @@ def _velocity_power(made_by: Recipe) -> Form:
         ),
         needs=(descriptor,),
         drag=drag,
+        law_u=SPHERE_LAW_U,
     )
 
 
