@@ -24,6 +24,7 @@ from settlelab.calibrate.ranking import (
     predictions,
     published_contender,
     rank,
+    rank_by_group,
     squared_error,
 )
 from settlelab.calibrate.validation import parameters_without
@@ -92,6 +93,7 @@ def calibrate_drops(
     state = state or judge_law(published_law(DRAG[best.name]), means)
     return Calibration(
         ranking=ranking,
+        ranking_by_group=rank_by_group(contenders, seen),
         predictions=predictions(contenders, seen),
         best_published=best.name,
         fits=fits,

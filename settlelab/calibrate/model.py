@@ -97,6 +97,7 @@ class Calibration:
     """Which law holds for these drops, and the calibrated form if one does better on particles it has not seen."""
 
     ranking: pd.DataFrame  # columns of ranking.csv, best first
+    ranking_by_group: pd.DataFrame  # the same measures by lot and by decade of the Reynolds number
     predictions: pd.DataFrame  # drop, method, kind, predicted_velocity [m/s, unbounded], deviation, in_range
     best_published: str
     fits: tuple[CalibratedFit, ...]

@@ -52,6 +52,7 @@ def _write(calibration: Calibration, out: Path) -> list[Path]:
 
     return [
         write_csv(calibration.ranking, None, out / "ranking.csv"),
+        write_csv(calibration.ranking_by_group, None, out / "ranking_by_group.csv"),
         write_csv(calibration.predictions, PredictedDrop, out / "predictions.csv"),
         write_card(calibration.card, out / "calibration.json"),
     ]
