@@ -14,7 +14,8 @@ from settlelab.calibrate.carding import Origin, make_card
 from settlelab.calibrate.choice import choose
 from settlelab.calibrate.falls import published_law
 from settlelab.calibrate.fit import LawFit, fit_form, judge_law
-from settlelab.calibrate.forms import FORMS, Form, build_form, recipe
+from settlelab.calibrate.form import FORMS, Form
+from settlelab.calibrate.forms import build_form, recipe
 from settlelab.calibrate.model import CalibratedFit, Calibration, FittedParameter
 from settlelab.calibrate.observations import Observations, observe, particle_means, replicates
 from settlelab.calibrate.ranking import (

@@ -103,7 +103,7 @@ def sensitivity(law: Law, falls: Falls, velocity: FloatArray, name: str) -> Floa
 
 
 def drag_sensitivity(law: Law, falls: Falls, velocity: FloatArray) -> FloatArray:
-    """Relative change of the terminal velocity per relative change of the drag coefficient, (N,), -1 in creeping flow."""
+    """Relative change of the terminal velocity per relative change of the drag coefficient: (N,), -1 if creeping."""
     faster, slower = velocity * np.exp(_STEP), velocity * np.exp(-_STEP)
     return -2 * _STEP / (_imbalance(law, falls, faster) - _imbalance(law, falls, slower))
 

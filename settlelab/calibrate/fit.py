@@ -23,7 +23,7 @@ from settlelab.calibrate.covariance import (
     restricted_scatter,
 )
 from settlelab.calibrate.falls import Law, settle
-from settlelab.calibrate.forms import Form, Parameter
+from settlelab.calibrate.form import Form, Parameter
 from settlelab.calibrate.observations import Observations
 from settlelab.errors import FitError
 from settlelab.physics.constants import BoolArray, FloatArray

@@ -10,7 +10,7 @@ import pandas as pd
 from numpy.typing import ArrayLike
 
 from settlelab.calibrate.card import Card
-from settlelab.calibrate.forms import Form
+from settlelab.calibrate.form import Form
 from settlelab.physics.constants import FloatArray
 
 __all__ = ["CalibratedFit", "Calibration", "FittedParameter"]

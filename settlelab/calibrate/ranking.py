@@ -117,8 +117,8 @@ def rank(contenders: Sequence[Contender], seen: Observations) -> pd.DataFrame:
 def rank_by_group(contenders: Sequence[Contender], seen: Observations) -> pd.DataFrame:
     """How far each method is from the drops of each lot, and of each decade of the Reynolds number.
 
-    Columns `by` ("lot" or "reynolds") and `group` (its name, or such as "1 to 10"), then the measures of the ranking, best
-    first within a group. A lot without a name is none. Intervals are missing where a group has fewer than five
+    Columns `by` ("lot" or "reynolds") and `group` (its name, or such as "1 to 10"), then the measures of the ranking,
+    best first within a group. A lot without a name is none. Intervals are missing where a group has fewer than five
     particles.
     """
     decade = np.floor(np.log10(seen.reynolds)).astype(np.int64)

@@ -1,4 +1,4 @@
-"""Measurements that others published, read in place: each folder's SOURCE.md names origin, licence and known problems."""
+"""Measurements that others published, read in place: SOURCE.md of each folder names origin, licence and problems."""
 
 from __future__ import annotations
 
@@ -111,11 +111,11 @@ def test_steel_balls_in_castor_oil_as_a_table_typed_from_a_bench_book(tmp_path: 
 
 
 def test_disks_are_no_spheres() -> None:
-    """Face-on disks, taken as a twentieth as thick as wide (not in the table; thin disks fall alike, Clift et al. 1978).
+    """Face-on disks, taken as a twentieth as thick as wide: not in the table; thin disks fall alike (Clift et al.).
 
-    The sphere laws give three times their velocity. Of the shape laws those fitted to isometric or disk-like bodies over
-    all Re come closest: Ganser (1993), although outside its stated range, and Haider & Levenspiel (1989), with disks
-    among their data. A form of two factors needs no shape law.
+    The sphere laws give three times their velocity. Of the shape laws those fitted to isometric or disk-like bodies
+    over all Re come closest: Ganser (1993), although outside its stated range, and Haider & Levenspiel (1989), with
+    disks among their data. A form of two factors needs no shape law.
     """
     data, thickness = pd.read_csv(OPEN / "roos_willmarth1971" / "disks.csv"), 0.05
     size = np.cbrt(1.5 * thickness)  # equal-volume diameter over that of the disk
