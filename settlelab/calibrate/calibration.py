@@ -28,6 +28,7 @@ from settlelab.calibrate.ranking import (
     rank_by_group,
     squared_error,
 )
+from settlelab.calibrate.residuals import check_notes, influence, residual_checks
 from settlelab.calibrate.validation import parameters_without
 from settlelab.errors import FitError
 from settlelab.physics.constants import BoolArray
@@ -90,8 +91,9 @@ def calibrate_drops(
     ranking = rank(contenders, seen)
     fits = tuple(_calibrated(item, ranking, seen) for item in fitted)
     chosen = next((fit for fit in fits if fit.name == verdict.chosen), None)
-    state = next((item.fit for item in fitted if item.form.name == verdict.chosen), None)
-    state = state or judge_law(published_law(DRAG[best.name]), means)
+    taken = next((item for item in fitted if item.form.name == verdict.chosen), None)
+    state = taken.fit if taken else judge_law(published_law(DRAG[best.name]), means)
+    checks, moved = residual_checks(state, means), influence(taken.form, state, means) if taken else None
     return Calibration(
         ranking=ranking,
         ranking_by_group=rank_by_group(contenders, seen),
@@ -100,8 +102,17 @@ def calibrate_drops(
         fits=fits,
         chosen=chosen,
         card=make_card(chosen, DRAG[best.name], state, ranking, seen, origin or Origin()),
+        residual_checks=checks,
+        influence=moved,
         left_out={**left_out, **failed},
-        notes=(verdict.sentence, *_notes(ranking, best, chosen, state, means), *attenuation_notes(averaged), *aside),
+        notes=(
+            verdict.sentence,
+            *_notes(ranking, best, chosen, state, means),
+            *check_notes(verdict.chosen or best.name, checks, moved),
+            *(f"{name} was not fitted: {reason}." for name, reason in failed.items() if choice.forms),
+            *attenuation_notes(averaged),
+            *aside,
+        ),
     )
 
 
@@ -227,7 +238,7 @@ def _notes(
         notes.append(f"{best.name} is used outside its stated range for {outside} of {len(best.in_range)}.")
     if chosen is not None:
         notes += [f"{chosen.name}: {warning}." for warning in chosen.warnings]
-    far = np.abs(state.residual) > FAR_OFF * np.sqrt(state.weights.variance)
+    far = np.abs(state.distance) > FAR_OFF
     notes += [_far_off(far, means)] if np.any(far) else []
     if not np.any(means.velocity_u):
         notes.append("No uncertainty of the velocities is stated: the scatter between particles alone weights the fit.")
@@ -237,7 +248,8 @@ def _notes(
 def _far_off(far: BoolArray, means: Observations) -> str:
     shown = ", ".join(str(number) for number in means.drop[far].tolist())
     return (
-        f"Far from the law ({FAR_OFF:g} standard deviations and more), look for a cause: the particle of drop {shown}."
+        f"Far from the law ({FAR_OFF:g} standard deviations and more; held down in the fit), look for a cause: the "
+        f"particle of drop {shown}."
     )
 
 

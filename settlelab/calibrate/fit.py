@@ -3,7 +3,7 @@
 A fit alternates between its parameters and its weights: the weights hold the sensitivities to size, density, viscosity
 and shape at the fitted law (effective variance), and a scatter between particles estimated by restricted maximum
 likelihood. They stay fixed while the parameters move: weights that move with them would favour laws under which
-velocities look uncertain.
+velocities look uncertain. Observations far from the law pull no harder than those at three standard deviations.
 """
 
 from __future__ import annotations
@@ -34,6 +34,8 @@ __all__ = ["LawFit", "Solution", "fit_form", "judge_law", "least_squares"]
 _ROUNDS = 8  # of parameters and weights in turn; three or four settle
 _SETTLED = 1e-2  # change of parameters over their uncertainty at which it has settled
 _ILL = 1e6  # condition number of the scaled derivatives at which parameters cannot be told apart
+_REACH = 3.0  # standard deviations beyond which an observation is held down; normal errors seldom get there
+_HOLDS = 12  # rounds of scatter and holding down in turn
 _STEP = 1e-5  # of the derivatives to the parameters, relative to their scale
 SPARE_PARTICLES = 3  # more than there are parameters
 
@@ -59,6 +61,7 @@ class LawFit:
     covariance: FloatArray
     at_bound: BoolArray
     residual: FloatArray  # measured less fitted ln V
+    distance: FloatArray  # the same over its standard deviation, nothing held down
     jacobian: FloatArray  # (N, P), fitted ln V to the parameters
     weights: Covariance
     scatter: FloatArray  # between particles, and where it can be told apart of a particle between fluids
@@ -169,8 +172,7 @@ def _weigh(law: Law, seen: Observations, jacobian: FloatArray) -> LawFit:
     fitted = _log_velocity(law, seen)
     residual = np.log(seen.velocity) - fitted
     known = known_covariance(seen, law, np.exp(fitted))
-    scatter = restricted_scatter(residual, jacobian, known)
-    weights = known.with_scatter(scatter)
+    scatter, distance, weights = _held_down(residual, jacobian, known)
     size, parameters = len(residual), jacobian.shape[1] + len(scatter)
     # the number of parameters counts the scatter too (Hurvich & Tsai 1989, Biometrika 76, 297-307)
     penalty = 2 * parameters * size / (size - parameters - 1) if size > parameters + 1 else np.inf
@@ -180,6 +182,7 @@ def _weigh(law: Law, seen: Observations, jacobian: FloatArray) -> LawFit:
         covariance=np.empty((0, 0)),
         at_bound=np.empty(0, dtype=np.bool_),
         residual=residual,
+        distance=distance,
         jacobian=jacobian,
         weights=weights,
         scatter=scatter,
@@ -187,6 +190,30 @@ def _weigh(law: Law, seen: Observations, jacobian: FloatArray) -> LawFit:
         aicc=deviance(residual, jacobian, weights, restricted=False) + penalty,
         degrees=len(np.unique(seen.particle)) - jacobian.shape[1],
     )
+
+
+def _held_down(
+    residual: FloatArray, jacobian: FloatArray, known: Covariance
+) -> tuple[FloatArray, FloatArray, Covariance]:
+    """Scatter, distance of each observation in standard deviations, and weights.
+
+    An observation at z > 3 standard deviations gets z/3 times its variance, which holds its pull to that of one at 3;
+    the scatter is found with the same variances, so that it is that of the others.
+
+    References
+    ----------
+    Huber (1964), Ann. Math. Stat. 35, 73-101.
+    """
+    added = np.zeros_like(residual)
+    for _ in range(_HOLDS):
+        before, held = added, replace(known, own=known.own + added)
+        scatter = restricted_scatter(residual, jacobian, held)
+        variance = known.with_scatter(scatter).variance
+        distance = residual / np.sqrt(variance)
+        added = variance * np.maximum(np.abs(distance) / _REACH - 1, 0.0)
+        if np.all(np.abs(added - before) <= _SETTLED * variance):
+            break
+    return scatter, distance, replace(known, own=known.own + added).with_scatter(scatter)
 
 
 def _log_velocity(law: Law, seen: Observations) -> FloatArray:

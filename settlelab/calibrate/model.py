@@ -103,5 +103,7 @@ class Calibration:
     fits: tuple[CalibratedFit, ...]
     chosen: CalibratedFit | None  # None: the published law is kept
     card: Card
+    residual_checks: pd.DataFrame  # of the law on the card: tests for trends, lots, normality
+    influence: pd.DataFrame | None  # what leaving out a particle moves; None for a published law
     left_out: Mapping[str, str]  # published methods and forms that could not be used, with the reason
     notes: tuple[str, ...]  # the verdict first

@@ -25,8 +25,8 @@ SHOWN = 5  # published methods printed; ranking.csv has them all
     "--form",
     "forms",
     multiple=True,
-    help='Calibrated form to fit, or one of your own such as "formula: a/Re + b*exp(-5*sphericity); a=30" with values to '
-    "start from; may be repeated [default: all on board].",
+    help='Calibrated form to fit, or one of your own such as "formula: a/Re + b*exp(-5*sphericity); a=30" with values '
+    "to start from; may be repeated [default: all on board].",
 )
 @click.option("--title", default="", help="For the card: what was tested.")
 @click.option("--date", default="", help="For the card: when.")

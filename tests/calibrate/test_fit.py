@@ -10,6 +10,7 @@ import pytest
 from scipy.optimize import least_squares as scipy_least_squares
 
 from settlelab.calibrate.attenuation import expected_inputs
+from settlelab.calibrate.falls import settle
 from settlelab.calibrate.fit import fit_form, judge_law, least_squares
 from settlelab.calibrate.forms import FORMS, SPHERE_LAW, Form, Parameter, build_form, recipe
 from settlelab.calibrate.observations import Observations, observe, particle_means
@@ -120,6 +121,29 @@ def test_scatter_between_particles_is_found() -> None:
     found = [fit_form(POWER_FORM, means_of(Lots(scatter=0.06, particles=40), seed)) for seed in range(8)]
     assert np.mean([fit.scatter[0] for fit in found]) == pytest.approx(0.06, rel=0.1)
     assert np.mean([fit.repeatability for fit in found]) == pytest.approx(0.01, rel=0.1)
+
+
+def test_a_few_particles_far_off_hardly_move_a_fit() -> None:
+    """Two of 40 particles half as fast again, where the others scatter by 3 %: against the fit without the two."""
+    means = means_of(Lots(particles=40, scatter=0.03), 1)
+    wrong = np.isin(means.particle, means.particle[:2])
+    clean = fit_form(POWER_FORM, means.take(~wrong))
+    held = fit_form(POWER_FORM, replace(means, velocity=np.where(wrong, 1.5, 1.0) * means.velocity))
+    assert np.all(held.distance[wrong] > 4)
+    assert held.scatter[0] < 1.6 * clean.scatter[0]  # root mean square of all 40: 0.09
+    moved = np.abs(held.values - clean.values)
+    assert np.all(moved < 1.0 * np.sqrt(np.diag(clean.covariance)))
+    weighed_alike = fit_without_holding(replace(means, velocity=np.where(wrong, 1.5, 1.0) * means.velocity))
+    assert np.all(moved < np.abs(weighed_alike - clean.values) / 2)
+
+
+def fit_without_holding(seen: Observations) -> np.ndarray:
+    """Plain least squares of ln V, every particle alike."""
+
+    def residual(values: np.ndarray) -> np.ndarray:
+        return np.log(settle(POWER_FORM.law(values), seen.falls).velocity / seen.velocity)
+
+    return scipy_least_squares(residual, [parameter.start for parameter in POWER_FORM.parameters]).x
 
 
 def test_no_scatter_where_the_stated_uncertainty_explains_all() -> None:
