@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 import pandas as pd
@@ -18,6 +18,7 @@ from settlelab.calibrate.form import FORMS, Form
 from settlelab.calibrate.forms import build_form, recipe
 from settlelab.calibrate.model import CalibratedFit, Calibration, FittedParameter
 from settlelab.calibrate.observations import Observations, observe, particle_means, replicates
+from settlelab.calibrate.profile import profile_intervals
 from settlelab.calibrate.ranking import (
     Contender,
     by_particle,
@@ -90,8 +91,9 @@ def calibrate_drops(
     contenders = [*published, *(item.contender for item in fitted)]
     ranking = rank(contenders, seen)
     fits = tuple(_calibrated(item, ranking, seen) for item in fitted)
-    chosen = next((fit for fit in fits if fit.name == verdict.chosen), None)
     taken = next((item for item in fitted if item.form.name == verdict.chosen), None)
+    chosen = _profiled(next(fit for fit in fits if fit.name == verdict.chosen), taken.fit, means) if taken else None
+    fits = tuple(chosen if chosen is not None and fit.name == chosen.name else fit for fit in fits)
     state = taken.fit if taken else judge_law(published_law(DRAG[best.name]), means)
     checks, moved = residual_checks(state, means), influence(taken.form, state, means) if taken else None
     return Calibration(
@@ -206,6 +208,15 @@ def _calibrated(item: _Fitted, ranking: pd.DataFrame, seen: Observations) -> Cal
         particles=len(np.unique(seen.particle)),
         warnings=_warnings(parameters, fit.covariance / np.outer(u, u)),
     )
+
+
+def _profiled(chosen: CalibratedFit, fit: LawFit, means: Observations) -> CalibratedFit:
+    """The chosen form with intervals by the profile of the likelihood, unless a parameter stands at a bound."""
+    if np.any(fit.at_bound):
+        return chosen
+    ends = profile_intervals(chosen.form, fit, means).tolist()
+    parameters = (replace(each, low=low, high=high) for each, (low, high) in zip(chosen.parameters, ends, strict=True))
+    return replace(chosen, parameters=tuple(parameters))
 
 
 def _warnings(parameters: Sequence[FittedParameter], correlation: NDArray[np.float64]) -> tuple[str, ...]:

@@ -29,7 +29,16 @@ from settlelab.errors import FitError
 from settlelab.physics.constants import BoolArray, FloatArray
 from settlelab.physics.least_squares import minimise
 
-__all__ = ["LawFit", "Solution", "fit_form", "judge_law", "least_squares"]
+__all__ = [
+    "LawFit",
+    "Solution",
+    "derivatives",
+    "fit_form",
+    "judge_law",
+    "least_squares",
+    "log_velocity",
+    "parameter_covariance",
+]
 
 _ROUNDS = 8  # of parameters and weights in turn; three or four settle
 _SETTLED = 1e-2  # change of parameters over their uncertainty at which it has settled
@@ -136,18 +145,18 @@ def fit_form(form: Form, seen: Observations) -> LawFit:
     for _ in range(_ROUNDS):
         before, solution = values, _solve(form, seen, state.weights)
         values = solution.values
-        state = _weigh(form.law(values), seen, _jacobian(form, values, seen))
-        u = np.sqrt(np.diag(_parameter_covariance(state.jacobian, state.weights)))
+        state = _weigh(form.law(values), seen, derivatives(form, values, seen))
+        u = np.sqrt(np.diag(parameter_covariance(state.jacobian, state.weights)))
         if np.all(np.abs(values - before) <= _SETTLED * u):
             break
     law = form.law(values)
     of_law = law_effects(seen, law, settle(law, seen.falls).velocity, form.law_u)
-    u = np.sqrt(np.diag(_parameter_covariance(state.jacobian, state.weights, of_law)))
+    u = np.sqrt(np.diag(parameter_covariance(state.jacobian, state.weights, of_law)))
     ends = np.array([(parameter.low, parameter.high) for parameter in form.parameters])
     at_bound = solution.at_bound | (values - u <= ends[:, 0]) | (values + u >= ends[:, 1])
     covariance = np.full((len(values), len(values)), np.nan)
     if len(free := np.flatnonzero(~at_bound)):
-        covariance[np.ix_(free, free)] = _parameter_covariance(state.jacobian[:, free], state.weights, of_law)
+        covariance[np.ix_(free, free)] = parameter_covariance(state.jacobian[:, free], state.weights, of_law)
     return replace(state, values=values, covariance=covariance, at_bound=at_bound)
 
 
@@ -162,14 +171,14 @@ def _solve(form: Form, seen: Observations, weights: Covariance) -> Solution:
     whitening = weights.whitening()
 
     def residual(values: FloatArray) -> FloatArray:
-        return whitening.apply(measured - _log_velocity(form.law(values), seen))
+        return whitening.apply(measured - log_velocity(form.law(values), seen))
 
     return least_squares(residual, form.parameters)
 
 
 def _weigh(law: Law, seen: Observations, jacobian: FloatArray) -> LawFit:
     """Residuals, covariance and scatter of the observations about a law whose parameters are taken as found."""
-    fitted = _log_velocity(law, seen)
+    fitted = log_velocity(law, seen)
     residual = np.log(seen.velocity) - fitted
     known = known_covariance(seen, law, np.exp(fitted))
     scatter, distance, weights = _held_down(residual, jacobian, known)
@@ -216,24 +225,25 @@ def _held_down(
     return scatter, distance, replace(known, own=known.own + added).with_scatter(scatter)
 
 
-def _log_velocity(law: Law, seen: Observations) -> FloatArray:
+def log_velocity(law: Law, seen: Observations) -> FloatArray:
+    """Natural logarithm of the velocities [m/s] under a law, (N,)."""
     return np.asarray(np.log(settle(law, seen.falls).velocity))
 
 
-def _jacobian(form: Form, values: FloatArray, seen: Observations) -> FloatArray:
-    """Derivative of ln V to each parameter by central differences that stay inside the bounds."""
+def derivatives(form: Form, values: FloatArray, seen: Observations) -> FloatArray:
+    """Derivative of ln V to each parameter, (N, P), by central differences that stay inside the bounds."""
     columns = []
     for number, parameter in enumerate(form.parameters):
         step = _STEP * (abs(parameter.start) or 1.0)
         up, down = values.copy(), values.copy()
         up[number] = min(values[number] + step, parameter.high)
         down[number] = max(values[number] - step, parameter.low)
-        change = _log_velocity(form.law(up), seen) - _log_velocity(form.law(down), seen)
+        change = log_velocity(form.law(up), seen) - log_velocity(form.law(down), seen)
         columns.append(change / (up[number] - down[number]))
     return np.column_stack(columns)
 
 
-def _parameter_covariance(jacobian: FloatArray, weights: Covariance, of_law: FloatArray | None = None) -> FloatArray:
+def parameter_covariance(jacobian: FloatArray, weights: Covariance, of_law: FloatArray | None = None) -> FloatArray:
     """Covariance of generalised least squares, and what errors of the law (`law_effects`) add to it.
 
     These have no part in the weights: a fit that knew of them would leave such deviations standing, where the

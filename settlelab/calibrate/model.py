@@ -18,7 +18,10 @@ __all__ = ["CalibratedFit", "Calibration", "FittedParameter"]
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class FittedParameter:
-    """A parameter with its standard uncertainty and 95 % interval; these are nan where it stands at a bound."""
+    """A parameter with its standard uncertainty and 95 % interval; these are nan where it stands at a bound.
+
+    The interval is that of the profile likelihood for the form that is chosen, and symmetric for the others.
+    """
 
     name: str
     value: float
