@@ -79,9 +79,7 @@ def calibrate_drops(
     """
     choice = choice or CalibrationChoice()
     seen, aside = observe(drops, choice.descriptors)
-    known = [name for name in seen.falls.descriptors if name != "lot"]
-    methods, left_out = usable_methods(known)
-    published = [published_contender(method, seen) for method in methods]
+    published, left_out = _published(seen)
     best = min(published, key=lambda contender: float(np.mean(by_particle(seen, squared_error(contender)))))
     averaged = particle_means(seen)
     means = expected_inputs(averaged)
@@ -90,10 +88,9 @@ def calibrate_drops(
     verdict = choose(best, general, seen)
     contenders = [*published, *(item.contender for item in fitted)]
     ranking = rank(contenders, seen)
-    fits = tuple(_calibrated(item, ranking, seen) for item in fitted)
     taken = next((item for item in fitted if item.form.name == verdict.chosen), None)
-    chosen = _profiled(next(fit for fit in fits if fit.name == verdict.chosen), taken.fit, means) if taken else None
-    fits = tuple(chosen if chosen is not None and fit.name == chosen.name else fit for fit in fits)
+    chosen = _profiled(_calibrated(taken, ranking, seen), taken.fit, means) if taken else None
+    fits = tuple(chosen if chosen and item is taken else _calibrated(item, ranking, seen) for item in fitted)
     state = taken.fit if taken else judge_law(published_law(DRAG[best.name]), means)
     checks, moved = residual_checks(state, means), influence(taken.form, state, means) if taken else None
     return Calibration(
@@ -116,6 +113,12 @@ def calibrate_drops(
             *aside,
         ),
     )
+
+
+def _published(seen: Observations) -> tuple[list[Contender], dict[str, str]]:
+    """The published laws against the drops, and why others are left out."""
+    methods, left_out = usable_methods([name for name in seen.falls.descriptors if name != "lot"])
+    return [published_contender(method, seen) for method in methods], left_out
 
 
 def _forms(choice: CalibrationChoice, seen: Observations, best: str) -> list[Form]:
