@@ -247,6 +247,8 @@ def _notes(
     notes = []
     if len(rows):
         notes.append(f"These drops cannot tell {best.name} apart from {', '.join(rows['method'])} (95 %).")
+    if not best.facts["confirmed"]:
+        notes.append(f"The formula of {best.name} is not confirmed against its source: settlelab methods says why.")
     if not np.all(best.in_range):
         outside = _count(int(np.sum(~best.in_range)), "drop")
         notes.append(f"{best.name} is used outside its stated range for {outside} of {len(best.in_range)}.")

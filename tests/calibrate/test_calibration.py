@@ -149,6 +149,19 @@ def test_sphericity_of_each_lot_is_not_taken_unasked() -> None:
     assert found.chosen is None or found.chosen.name != by_lot
 
 
+def test_an_unconfirmed_formula_that_comes_closest_is_told(monkeypatch: pytest.MonkeyPatch) -> None:
+    drops = draw(published("ganser-1993"), Lots(scatter=0.02), 4)
+    told = "The formula of ganser-1993 is not confirmed against its source: settlelab methods says why."
+    sure = calibrate_drops(drops)
+    assert sure.best_published == "ganser-1993"
+    assert told not in sure.notes
+    doubtful = replace(DRAG["ganser-1993"], confirmed=False)
+    monkeypatch.setattr(
+        "settlelab.calibrate.calibration.usable_methods", lambda known: ((doubtful, DRAG["chien-1994"]), {})
+    )
+    assert told in calibrate_drops(drops).notes
+
+
 def test_ranking_by_lot_and_by_decade_of_the_reynolds_number(shaped: pd.DataFrame) -> None:
     """Against the same measures of the predictions, taken by hand."""
     found = calibrate_drops(shaped)

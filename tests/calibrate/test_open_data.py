@@ -9,8 +9,11 @@ import pandas as pd
 import pytest
 
 from settlelab.calibrate import Calibration, calibrate_drops, read_drop_table
+from settlelab.calibrate.fit import fit_form
+from settlelab.calibrate.forms import build_form, recipe
+from settlelab.calibrate.observations import observe, particle_means
 from settlelab.physics.constants import STANDARD_GRAVITY, FloatArray
-from settlelab.study.model import CalibrationChoice
+from settlelab.physics.drag import DRAG
 
 OPEN = Path(__file__).parents[3] / "shared" / "reference" / "open_data"
 pytestmark = pytest.mark.skipif(not OPEN.is_dir(), reason="the open data are not beside the repository")
@@ -46,7 +49,7 @@ def test_spheres_of_roos_and_willmarth_lie_on_the_standard_curve() -> None:
     table = ranking(found)
     assert table.loc[list(SPHERES), "bias_percent"].between(0.0, 2.5).all()
     assert table.loc[list(SPHERES), "rms_percent"].max() < 5
-    assert found.best_published in SPHERES
+    assert DRAG[found.best_published].needs == ()
     # from Re 5 to 1e5 neither of these is a law any more
     assert table.loc[["stokes-1851", "schiller-naumann-1933"], "rms_percent"].min() > 20
 
@@ -77,11 +80,11 @@ def test_spheres_in_still_water_fall_as_the_standard_curve_says() -> None:
             "viscosity_u": 0.05 * VISCOSITY,
         }
     )
-    (factor,) = calibrate_drops(drops, CalibrationChoice(forms=("factor",))).fits
-    assert factor.form.recipe.base in SPHERES
-    assert factor.parameters[0].low < 1 < factor.parameters[0].high
-    assert factor.u[0] < 0.03
-    assert factor.between_particles == 0.0, "the stated uncertainties do not explain the spread"
+    fit = fit_form(build_form(recipe("factor", base="clift-grace-weber-1978")), particle_means(observe(drops)[0]))
+    u = np.sqrt(fit.covariance[0, 0])
+    assert abs(fit.values[0] - 1) < fit.coverage_factor * u
+    assert u < 0.03
+    assert fit.scatter[0] == 0.0, "the stated uncertainties do not explain the spread"
 
 
 def test_steel_balls_in_castor_oil_as_a_table_typed_from_a_bench_book(tmp_path: Path) -> None:
