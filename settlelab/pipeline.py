@@ -181,6 +181,7 @@ def _write(
     yield write_csv(measured.budget, None, out / "budget.csv")
     if calibration is not None:
         yield write_csv(calibration.ranking, None, out / "ranking.csv")
+        yield write_csv(calibration.ranking_by_group, None, out / "ranking_by_group.csv")
         yield write_card(calibration.card, out / "calibration.json")
     provenance = _provenance(study)
     yield _write_json(provenance, out / "provenance.json")

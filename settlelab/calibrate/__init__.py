@@ -6,6 +6,7 @@ In: measured velocities with what they depend on (columns of `Drop`). Out: `Cali
 
 from __future__ import annotations
 
+from settlelab.calibrate.annulus import ANNULUS_CAUTIONS, AnnulusRow, in_annulus
 from settlelab.calibrate.calibration import calibrate_drops
 from settlelab.calibrate.card import Card, read_card, write_card
 from settlelab.calibrate.carding import Origin
@@ -16,6 +17,8 @@ from settlelab.calibrate.sizes import ladder, read_sizes
 from settlelab.calibrate.table import as_measured, assumptions, read_drop_table
 
 __all__ = [
+    "ANNULUS_CAUTIONS",
+    "AnnulusRow",
     "CalibratedFit",
     "Calibration",
     "Card",
@@ -26,6 +29,7 @@ __all__ = [
     "as_measured",
     "assumptions",
     "calibrate_drops",
+    "in_annulus",
     "ladder",
     "predict",
     "read_card",

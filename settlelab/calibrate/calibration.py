@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Iterable, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 import pandas as pd
@@ -14,9 +14,11 @@ from settlelab.calibrate.carding import Origin, make_card
 from settlelab.calibrate.choice import choose
 from settlelab.calibrate.falls import published_law
 from settlelab.calibrate.fit import LawFit, fit_form, judge_law
-from settlelab.calibrate.forms import FORMS, Form, build_form, recipe
+from settlelab.calibrate.form import FORMS, Form
+from settlelab.calibrate.forms import build_form, recipe
 from settlelab.calibrate.model import CalibratedFit, Calibration, FittedParameter
 from settlelab.calibrate.observations import Observations, observe, particle_means, replicates
+from settlelab.calibrate.profile import profile_intervals
 from settlelab.calibrate.ranking import (
     Contender,
     by_particle,
@@ -24,8 +26,10 @@ from settlelab.calibrate.ranking import (
     predictions,
     published_contender,
     rank,
+    rank_by_group,
     squared_error,
 )
+from settlelab.calibrate.residuals import check_notes, influence, residual_checks
 from settlelab.calibrate.validation import parameters_without
 from settlelab.errors import FitError
 from settlelab.physics.constants import BoolArray
@@ -75,9 +79,7 @@ def calibrate_drops(
     """
     choice = choice or CalibrationChoice()
     seen, aside = observe(drops, choice.descriptors)
-    known = [name for name in seen.falls.descriptors if name != "lot"]
-    methods, left_out = usable_methods(known)
-    published = [published_contender(method, seen) for method in methods]
+    published, left_out = _published(seen)
     best = min(published, key=lambda contender: float(np.mean(by_particle(seen, squared_error(contender)))))
     averaged = particle_means(seen)
     means = expected_inputs(averaged)
@@ -86,20 +88,37 @@ def calibrate_drops(
     verdict = choose(best, general, seen)
     contenders = [*published, *(item.contender for item in fitted)]
     ranking = rank(contenders, seen)
-    fits = tuple(_calibrated(item, ranking, seen) for item in fitted)
-    chosen = next((fit for fit in fits if fit.name == verdict.chosen), None)
-    state = next((item.fit for item in fitted if item.form.name == verdict.chosen), None)
-    state = state or judge_law(published_law(DRAG[best.name]), means)
+    taken = next((item for item in fitted if item.form.name == verdict.chosen), None)
+    chosen = _profiled(_calibrated(taken, ranking, seen), taken.fit, means) if taken else None
+    fits = tuple(chosen if chosen and item is taken else _calibrated(item, ranking, seen) for item in fitted)
+    state = taken.fit if taken else judge_law(published_law(DRAG[best.name]), means)
+    checks, moved = residual_checks(state, means), influence(taken.form, state, means) if taken else None
     return Calibration(
         ranking=ranking,
+        ranking_by_group=rank_by_group(contenders, seen),
         predictions=predictions(contenders, seen),
         best_published=best.name,
         fits=fits,
         chosen=chosen,
         card=make_card(chosen, DRAG[best.name], state, ranking, seen, origin or Origin()),
+        residual_checks=checks,
+        influence=moved,
         left_out={**left_out, **failed},
-        notes=(verdict.sentence, *_notes(ranking, best, chosen, state, means), *attenuation_notes(averaged), *aside),
+        notes=(
+            verdict.sentence,
+            *_notes(ranking, best, chosen, state, means),
+            *check_notes(verdict.chosen or best.name, checks, moved),
+            *(f"{name} was not fitted: {reason}." for name, reason in failed.items() if choice.forms),
+            *attenuation_notes(averaged),
+            *aside,
+        ),
     )
+
+
+def _published(seen: Observations) -> tuple[list[Contender], dict[str, str]]:
+    """The published laws against the drops, and why others are left out."""
+    methods, left_out = usable_methods([name for name in seen.falls.descriptors if name != "lot"])
+    return [published_contender(method, seen) for method in methods], left_out
 
 
 def _forms(choice: CalibrationChoice, seen: Observations, best: str) -> list[Form]:
@@ -194,6 +213,15 @@ def _calibrated(item: _Fitted, ranking: pd.DataFrame, seen: Observations) -> Cal
     )
 
 
+def _profiled(chosen: CalibratedFit, fit: LawFit, means: Observations) -> CalibratedFit:
+    """The chosen form with intervals by the profile of the likelihood, unless a parameter stands at a bound."""
+    if np.any(fit.at_bound):
+        return chosen
+    ends = profile_intervals(chosen.form, fit, means).tolist()
+    parameters = (replace(each, low=low, high=high) for each, (low, high) in zip(chosen.parameters, ends, strict=True))
+    return replace(chosen, parameters=tuple(parameters))
+
+
 def _warnings(parameters: Sequence[FittedParameter], correlation: NDArray[np.float64]) -> tuple[str, ...]:
     """What keeps a parameter from being taken at face value."""
     told = [
@@ -219,12 +247,14 @@ def _notes(
     notes = []
     if len(rows):
         notes.append(f"These drops cannot tell {best.name} apart from {', '.join(rows['method'])} (95 %).")
+    if not best.facts["confirmed"]:
+        notes.append(f"The formula of {best.name} is not confirmed against its source: settlelab methods says why.")
     if not np.all(best.in_range):
         outside = _count(int(np.sum(~best.in_range)), "drop")
         notes.append(f"{best.name} is used outside its stated range for {outside} of {len(best.in_range)}.")
     if chosen is not None:
         notes += [f"{chosen.name}: {warning}." for warning in chosen.warnings]
-    far = np.abs(state.residual) > FAR_OFF * np.sqrt(state.weights.variance)
+    far = np.abs(state.distance) > FAR_OFF
     notes += [_far_off(far, means)] if np.any(far) else []
     if not np.any(means.velocity_u):
         notes.append("No uncertainty of the velocities is stated: the scatter between particles alone weights the fit.")
@@ -234,7 +264,8 @@ def _notes(
 def _far_off(far: BoolArray, means: Observations) -> str:
     shown = ", ".join(str(number) for number in means.drop[far].tolist())
     return (
-        f"Far from the law ({FAR_OFF:g} standard deviations and more), look for a cause: the particle of drop {shown}."
+        f"Far from the law ({FAR_OFF:g} standard deviations and more; held down in the fit), look for a cause: the "
+        f"particle of drop {shown}."
     )
 
 

@@ -15,7 +15,8 @@ import numpy as np
 from pydantic import BaseModel, ConfigDict, Field, ValidationError, model_validator
 
 from settlelab.calibrate.falls import Law, published_law
-from settlelab.calibrate.forms import Recipe, build_form
+from settlelab.calibrate.form import Recipe
+from settlelab.calibrate.forms import build_form
 from settlelab.errors import Fault, InputFaults, SettlelabError
 from settlelab.physics.constants import FloatArray
 from settlelab.physics.drag import DRAG
@@ -68,6 +69,7 @@ class CardLaw(_Part):
     kind: str = Field(description="published, or the calibrated form")
     base: str = Field(description="the published law that it is or stands on")
     descriptor: str = Field(description="shape descriptor x of the formula, or empty")
+    expression: str = Field(default="", description="a formula of the lab's own as it was typed, or empty")
     lots: tuple[str, ...] = Field(description="lots with a coefficient of their own, in the order of the coefficients")
     needs: tuple[str, ...] = Field(description="descriptors that every particle must have")
     formula: str
@@ -186,7 +188,13 @@ class Card(_Part):
         if self.law.kind == "published":
             return published_law(DRAG[find(self.law.base, DRAG).name])
         form = build_form(
-            Recipe(kind=self.law.kind, base=self.law.base, descriptor=self.law.descriptor, lots=self.law.lots)
+            Recipe(
+                kind=self.law.kind,
+                base=self.law.base,
+                descriptor=self.law.descriptor,
+                lots=self.law.lots,
+                expression=self.law.expression,
+            )
         )
         if len(form.parameters) != len(self.law.parameters):
             raise SettlelabError(

@@ -113,6 +113,7 @@ def _calibrated(fit: CalibratedFit) -> CardLaw:
         kind=made_by.kind,
         base=made_by.base,
         descriptor=made_by.descriptor,
+        expression=made_by.expression,
         lots=made_by.lots,
         needs=fit.form.needs,
         formula=fit.formula,

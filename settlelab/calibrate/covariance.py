@@ -1,7 +1,8 @@
 """How the measured velocities vary together: what is known of it, and the scatter that the drops themselves show.
 
 All covariances are of ln V, hence relative. An error of a particle's size, density or shape is the same in all its
-drops; one of a fluid's density or viscosity is the same in all drops in that fluid, and does not average out.
+drops; one of a fluid's density or viscosity is the same in all drops in that fluid, and does not average out. Nor does
+that of the sphere law under a form, which all drops at like Reynolds numbers share.
 """
 
 from __future__ import annotations
@@ -13,11 +14,11 @@ from numpy.typing import NDArray
 from scipy.linalg import cholesky_banded, solve_banded
 from scipy.optimize import minimize
 
-from settlelab.calibrate.falls import Law, sensitivity
+from settlelab.calibrate.falls import Law, drag_sensitivity, sensitivity
 from settlelab.calibrate.observations import Observations
 from settlelab.physics.constants import FloatArray
 
-__all__ = ["Covariance", "Whitening", "deviance", "known_covariance", "restricted_scatter"]
+__all__ = ["Covariance", "Whitening", "deviance", "known_covariance", "law_effects", "restricted_scatter"]
 
 FLOOR = 1e-4  # no velocity is known to better than 0.01 %, which also keeps the covariance invertible
 _OF_FLUID = frozenset({"fluid_density", "viscosity"})
@@ -124,6 +125,35 @@ def known_covariance(seen: Observations, law: Law, velocity: FloatArray) -> Cova
         of_particle=np.column_stack(of_particle) if of_particle else none,
         common=np.column_stack(common) if common else none,
     )
+
+
+def law_effects(seen: Observations, law: Law, velocity: FloatArray, law_u: float) -> FloatArray:
+    """Effects on ln V of an error in the law itself.
+
+    The error is made up of independent ones at whole powers of ten of Re, so that it is smooth in ln Re, as the
+    differences between good sphere laws are: common to drops at like Reynolds numbers, independent two decades apart.
+
+    Parameters
+    ----------
+    seen : Observations
+        N observations.
+    law : callable
+        Drag law.
+    velocity : (N,) array
+        Velocity under the law [m/s].
+    law_u : float
+        Relative standard uncertainty of its drag coefficients.
+
+    Returns
+    -------
+    (N, F) array
+        Standard deviations with sign; each column acts on all observations at once.
+    """
+    decade = np.log10(seen.reynolds)[:, None]
+    knots = np.arange(np.floor(decade.min()), np.floor(decade.max()) + 2)
+    share = np.maximum(1 - np.abs(decade - knots), 0.0)
+    share /= np.linalg.norm(share, axis=1, keepdims=True)
+    return np.asarray(law_u * drag_sensitivity(law, seen.falls, velocity)[:, None] * share)
 
 
 def restricted_scatter(residual: FloatArray, jacobian: FloatArray, known: Covariance) -> FloatArray:

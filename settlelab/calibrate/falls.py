@@ -12,7 +12,7 @@ from settlelab.physics.constants import STANDARD_GRAVITY, BoolArray, FloatArray
 from settlelab.physics.drag import Method, Settling, drag_in_fluid, terminal_velocity
 from settlelab.physics.rheology import Rheology
 
-__all__ = ["INPUTS", "Falls", "Law", "published_law", "sensitivity", "settle"]
+__all__ = ["INPUTS", "Falls", "Law", "drag_sensitivity", "published_law", "sensitivity", "settle"]
 
 # Drag coefficient by Reynolds number (already over the creeping correction) and the descriptors of each particle.
 Law = Callable[[FloatArray, Mapping[str, FloatArray]], FloatArray]
@@ -99,9 +99,13 @@ def sensitivity(law: Law, falls: Falls, velocity: FloatArray, name: str) -> Floa
     """
     up, down = falls.scaled(name, np.exp(_STEP)), falls.scaled(name, np.exp(-_STEP))
     by_input = _imbalance(law, up, velocity) - _imbalance(law, down, velocity)
+    return by_input / (2 * _STEP) * drag_sensitivity(law, falls, velocity)
+
+
+def drag_sensitivity(law: Law, falls: Falls, velocity: FloatArray) -> FloatArray:
+    """Relative change of the terminal velocity per relative change of the drag coefficient: (N,), -1 if creeping."""
     faster, slower = velocity * np.exp(_STEP), velocity * np.exp(-_STEP)
-    by_velocity = _imbalance(law, falls, faster) - _imbalance(law, falls, slower)
-    return -by_input / by_velocity
+    return -2 * _STEP / (_imbalance(law, falls, faster) - _imbalance(law, falls, slower))
 
 
 def _imbalance(law: Law, falls: Falls, velocity: FloatArray) -> FloatArray:

@@ -3,7 +3,7 @@
 A fit alternates between its parameters and its weights: the weights hold the sensitivities to size, density, viscosity
 and shape at the fitted law (effective variance), and a scatter between particles estimated by restricted maximum
 likelihood. They stay fixed while the parameters move: weights that move with them would favour laws under which
-velocities look uncertain.
+velocities look uncertain. Observations far from the law pull no harder than those at three standard deviations.
 """
 
 from __future__ import annotations
@@ -19,20 +19,32 @@ from settlelab.calibrate.covariance import (
     Covariance,
     deviance,
     known_covariance,
+    law_effects,
     restricted_scatter,
 )
 from settlelab.calibrate.falls import Law, settle
-from settlelab.calibrate.forms import Form, Parameter
+from settlelab.calibrate.form import Form, Parameter
 from settlelab.calibrate.observations import Observations
 from settlelab.errors import FitError
 from settlelab.physics.constants import BoolArray, FloatArray
 from settlelab.physics.least_squares import minimise
 
-__all__ = ["LawFit", "Solution", "fit_form", "judge_law", "least_squares"]
+__all__ = [
+    "LawFit",
+    "Solution",
+    "derivatives",
+    "fit_form",
+    "judge_law",
+    "least_squares",
+    "log_velocity",
+    "parameter_covariance",
+]
 
 _ROUNDS = 8  # of parameters and weights in turn; three or four settle
 _SETTLED = 1e-2  # change of parameters over their uncertainty at which it has settled
 _ILL = 1e6  # condition number of the scaled derivatives at which parameters cannot be told apart
+_REACH = 3.0  # standard deviations beyond which an observation is held down; normal errors seldom get there
+_HOLDS = 12  # rounds of scatter and holding down in turn
 _STEP = 1e-5  # of the derivatives to the parameters, relative to their scale
 SPARE_PARTICLES = 3  # more than there are parameters
 
@@ -58,6 +70,7 @@ class LawFit:
     covariance: FloatArray
     at_bound: BoolArray
     residual: FloatArray  # measured less fitted ln V
+    distance: FloatArray  # the same over its standard deviation, nothing held down
     jacobian: FloatArray  # (N, P), fitted ln V to the parameters
     weights: Covariance
     scatter: FloatArray  # between particles, and where it can be told apart of a particle between fluids
@@ -132,15 +145,18 @@ def fit_form(form: Form, seen: Observations) -> LawFit:
     for _ in range(_ROUNDS):
         before, solution = values, _solve(form, seen, state.weights)
         values = solution.values
-        state = _weigh(form.law(values), seen, _jacobian(form, values, seen))
-        u = np.sqrt(np.diag(_parameter_covariance(state.jacobian, state.weights)))
+        state = _weigh(form.law(values), seen, derivatives(form, values, seen))
+        u = np.sqrt(np.diag(parameter_covariance(state.jacobian, state.weights)))
         if np.all(np.abs(values - before) <= _SETTLED * u):
             break
+    law = form.law(values)
+    of_law = law_effects(seen, law, settle(law, seen.falls).velocity, form.law_u)
+    u = np.sqrt(np.diag(parameter_covariance(state.jacobian, state.weights, of_law)))
     ends = np.array([(parameter.low, parameter.high) for parameter in form.parameters])
     at_bound = solution.at_bound | (values - u <= ends[:, 0]) | (values + u >= ends[:, 1])
     covariance = np.full((len(values), len(values)), np.nan)
     if len(free := np.flatnonzero(~at_bound)):
-        covariance[np.ix_(free, free)] = _parameter_covariance(state.jacobian[:, free], state.weights)
+        covariance[np.ix_(free, free)] = parameter_covariance(state.jacobian[:, free], state.weights, of_law)
     return replace(state, values=values, covariance=covariance, at_bound=at_bound)
 
 
@@ -155,18 +171,17 @@ def _solve(form: Form, seen: Observations, weights: Covariance) -> Solution:
     whitening = weights.whitening()
 
     def residual(values: FloatArray) -> FloatArray:
-        return whitening.apply(measured - _log_velocity(form.law(values), seen))
+        return whitening.apply(measured - log_velocity(form.law(values), seen))
 
     return least_squares(residual, form.parameters)
 
 
 def _weigh(law: Law, seen: Observations, jacobian: FloatArray) -> LawFit:
     """Residuals, covariance and scatter of the observations about a law whose parameters are taken as found."""
-    fitted = _log_velocity(law, seen)
+    fitted = log_velocity(law, seen)
     residual = np.log(seen.velocity) - fitted
     known = known_covariance(seen, law, np.exp(fitted))
-    scatter = restricted_scatter(residual, jacobian, known)
-    weights = known.with_scatter(scatter)
+    scatter, distance, weights = _held_down(residual, jacobian, known)
     size, parameters = len(residual), jacobian.shape[1] + len(scatter)
     # the number of parameters counts the scatter too (Hurvich & Tsai 1989, Biometrika 76, 297-307)
     penalty = 2 * parameters * size / (size - parameters - 1) if size > parameters + 1 else np.inf
@@ -176,6 +191,7 @@ def _weigh(law: Law, seen: Observations, jacobian: FloatArray) -> LawFit:
         covariance=np.empty((0, 0)),
         at_bound=np.empty(0, dtype=np.bool_),
         residual=residual,
+        distance=distance,
         jacobian=jacobian,
         weights=weights,
         scatter=scatter,
@@ -185,33 +201,66 @@ def _weigh(law: Law, seen: Observations, jacobian: FloatArray) -> LawFit:
     )
 
 
-def _log_velocity(law: Law, seen: Observations) -> FloatArray:
+def _held_down(
+    residual: FloatArray, jacobian: FloatArray, known: Covariance
+) -> tuple[FloatArray, FloatArray, Covariance]:
+    """Scatter, distance of each observation in standard deviations, and weights.
+
+    An observation at z > 3 standard deviations gets z/3 times its variance, which holds its pull to that of one at 3;
+    the scatter is found with the same variances, so that it is that of the others.
+
+    References
+    ----------
+    Huber (1964), Ann. Math. Stat. 35, 73-101.
+    """
+    added = np.zeros_like(residual)
+    for _ in range(_HOLDS):
+        before, held = added, replace(known, own=known.own + added)
+        scatter = restricted_scatter(residual, jacobian, held)
+        variance = known.with_scatter(scatter).variance
+        distance = residual / np.sqrt(variance)
+        added = variance * np.maximum(np.abs(distance) / _REACH - 1, 0.0)
+        if np.all(np.abs(added - before) <= _SETTLED * variance):
+            break
+    return scatter, distance, replace(known, own=known.own + added).with_scatter(scatter)
+
+
+def log_velocity(law: Law, seen: Observations) -> FloatArray:
+    """Natural logarithm of the velocities [m/s] under a law, (N,)."""
     return np.asarray(np.log(settle(law, seen.falls).velocity))
 
 
-def _jacobian(form: Form, values: FloatArray, seen: Observations) -> FloatArray:
-    """Derivative of ln V to each parameter by central differences that stay inside the bounds."""
+def derivatives(form: Form, values: FloatArray, seen: Observations) -> FloatArray:
+    """Derivative of ln V to each parameter, (N, P), by central differences that stay inside the bounds."""
     columns = []
     for number, parameter in enumerate(form.parameters):
         step = _STEP * (abs(parameter.start) or 1.0)
         up, down = values.copy(), values.copy()
         up[number] = min(values[number] + step, parameter.high)
         down[number] = max(values[number] - step, parameter.low)
-        change = _log_velocity(form.law(up), seen) - _log_velocity(form.law(down), seen)
+        change = log_velocity(form.law(up), seen) - log_velocity(form.law(down), seen)
         columns.append(change / (up[number] - down[number]))
     return np.column_stack(columns)
 
 
-def _parameter_covariance(jacobian: FloatArray, weights: Covariance) -> FloatArray:
-    """Covariance of generalised least squares.
+def parameter_covariance(jacobian: FloatArray, weights: Covariance, of_law: FloatArray | None = None) -> FloatArray:
+    """Covariance of generalised least squares, and what errors of the law (`law_effects`) add to it.
+
+    These have no part in the weights: a fit that knew of them would leave such deviations standing, where the
+    parameters may well take them up.
 
     Raises
     ------
     FitError
         The observations do not determine the parameters.
     """
-    turned = weights.whitening().apply(jacobian)
+    whitening = weights.whitening()
+    turned = whitening.apply(jacobian)
     size = np.linalg.norm(turned, axis=0)
     if np.any(size == 0) or np.linalg.cond(turned / size) > _ILL:
         raise FitError("the drops do not determine the parameters: their Reynolds numbers or shapes are too alike")
-    return np.asarray(np.linalg.inv((turned / size).T @ (turned / size)) / np.outer(size, size))
+    covariance = np.linalg.inv((turned / size).T @ (turned / size)) / np.outer(size, size)
+    if of_law is not None:
+        moved = covariance @ (turned.T @ whitening.apply(of_law))
+        covariance = covariance + moved @ moved.T
+    return np.asarray(covariance)

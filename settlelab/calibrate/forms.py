@@ -1,24 +1,25 @@
 """The calibrated forms: a published drag law with a few parameters that a lab's own drops determine.
 
 Each stands on a law with the right creeping and high-Re ends, so that a parameter keeps its meaning outside the lab's
-range of Reynolds numbers. A form is built from its recipe, which is what a calibration card holds, so that a card read
-again gives the same law.
+range of Reynolds numbers. Refits of whole published laws stand in `refits`, a user's own formula in `formula`.
 """
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping, Sequence
-from dataclasses import dataclass
+from collections.abc import Sequence
 
 import numpy as np
 
-from settlelab.calibrate.falls import Law, published_law
+from settlelab.calibrate import refits
+from settlelab.calibrate.falls import published_law
+from settlelab.calibrate.form import FORMS, Descriptors, Form, Parameter, Recipe, Values, form
+from settlelab.calibrate.formula import FORMULA, formula_form
 from settlelab.errors import FitError, did_you_mean
 from settlelab.physics.constants import FloatArray
-from settlelab.physics.drag import DRAG, scaled_drag
+from settlelab.physics.drag import DRAG, SPHERE_LAW_U, scaled_drag
 from settlelab.physics.registry import find
 
-__all__ = ["FORMS", "SPHERE_LAW", "Form", "Parameter", "Recipe", "build_form", "recipe"]
+__all__ = ["FORMS", "SPHERE_LAW", "Form", "Parameter", "Recipe", "build_form", "recipe", "refits"]
 
 SPHERE_LAW = "cheng-2009"  # smooth, and within 3 % of the standard curve to Re 1e4
 
@@ -29,79 +30,22 @@ WRITTEN_OUT = {
     "K1 = 1/(1/3 + 2/3 s^-0.5), K2 = 10^(1.8148 (-log10 s)^0.5743)",
 }
 
-Values = (
-    FloatArray | Sequence[FloatArray | float]
-)  # one entry per parameter; an array gives each particle its own value
-Descriptors = Mapping[str, FloatArray]
-Drag = Callable[[Values, FloatArray, Descriptors], FloatArray]
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Recipe:
-    """What identifies a form: kind, published law it stands on, shape descriptor, lots with parameters of their own."""
-
-    kind: str  # key of FORMS
-    base: str
-    descriptor: str = ""
-    lots: tuple[str, ...] = ()
-
-
-@dataclass(frozen=True, slots=True)
-class Parameter:
-    """A parameter as it enters the formula; a fit starts at `start` and stays between the bounds."""
-
-    name: str
-    start: float
-    low: float
-    high: float
-    meaning: str
-
-
-@dataclass(frozen=True, slots=True, kw_only=True)
-class Form:
-    """A calibrated form whose parameters are still open."""
-
-    recipe: Recipe
-    formula: str  # readable without settlelab
-    parameters: tuple[Parameter, ...]
-    needs: tuple[str, ...]  # descriptors that every particle must have; `lot` is the number of its lot
-    drag: Drag
-
-    @property
-    def name(self) -> str:
-        """How tables call it, such as `stokes-newton-power of sphericity` or `factor on chien-1994`."""
-        if self.recipe.descriptor:
-            return f"{self.recipe.kind} of {self.recipe.descriptor.replace('_', ' ')}"
-        by_lot = " by lot" if self.recipe.lots else ""
-        return f"{self.recipe.kind}{by_lot} on {self.recipe.base}"
-
-    def law(self, values: Values) -> Law:
-        """The drag law with its parameters set."""
-        return lambda reynolds, descriptors: self.drag(values, reynolds, descriptors)
-
-
-Builder = Callable[[Recipe], Form]
-FORMS: dict[str, tuple[str, Builder]] = {}  # kind -> the law that it stands on unless told otherwise, and its builder
-
-
-def _form(kind: str, base: str) -> Callable[[Builder], Builder]:
-    def enter(builder: Builder) -> Builder:
-        FORMS[kind] = (base, builder)
-        return builder
-
-    return enter
-
 
 def recipe(kind: str, *, base: str = "", descriptor: str = "", lots: Sequence[str] = ()) -> Recipe:
-    """A recipe with the usual law to stand on where none is named.
+    """A recipe with the usual law to stand on where none is named; `formula: ...` is a user's own.
 
     Raises
     ------
     FitError
         No such form; the nearest name is offered.
     """
+    if kind.startswith(FORMULA):
+        return Recipe(kind="formula", base="", expression=kind.removeprefix(FORMULA).strip())
     if kind not in FORMS:
-        raise FitError(f'"{kind}" is not a calibrated form{did_you_mean(kind, FORMS)}; known: {", ".join(FORMS)}')
+        raise FitError(
+            f'"{kind}" is not a calibrated form{did_you_mean(kind, FORMS)}; known: {", ".join(FORMS)}, and '
+            f'"{FORMULA} ..." for a formula of your own'
+        )
     return Recipe(kind=kind, base=base or FORMS[kind][0], descriptor=descriptor, lots=tuple(lots))
 
 
@@ -115,6 +59,8 @@ def build_form(made_by: Recipe) -> Form:
     SettlelabError
         No such published law to stand on.
     """
+    if made_by.kind == "formula":
+        return formula_form(made_by)
     known = recipe(made_by.kind, base=find(made_by.base, DRAG).name, descriptor=made_by.descriptor, lots=made_by.lots)
     return FORMS[known.kind][1](known)
 
@@ -124,7 +70,7 @@ def _written_out(base: str) -> str:
     return f"{WRITTEN_OUT.get(base, f'F is {base}')} ({DRAG[base].source})"
 
 
-@_form("factor", SPHERE_LAW)
+@form("factor", SPHERE_LAW)
 def _factor(made_by: Recipe) -> Form:
     published = published_law(DRAG[made_by.base])
 
@@ -142,7 +88,7 @@ def _factor(made_by: Recipe) -> Form:
     )
 
 
-@_form("stokes-newton", SPHERE_LAW)
+@form("stokes-newton", SPHERE_LAW)
 def _stokes_newton(made_by: Recipe) -> Form:
     sphere = DRAG[made_by.base].formula
 
@@ -159,10 +105,11 @@ def _stokes_newton(made_by: Recipe) -> Form:
         ),
         needs=(),
         drag=drag,
+        law_u=SPHERE_LAW_U,
     )
 
 
-@_form("stokes-newton-power", SPHERE_LAW)
+@form("stokes-newton-power", SPHERE_LAW)
 def _stokes_newton_power(made_by: Recipe) -> Form:
     sphere, descriptor = DRAG[made_by.base].formula, made_by.descriptor
 
@@ -182,10 +129,11 @@ def _stokes_newton_power(made_by: Recipe) -> Form:
         ),
         needs=(descriptor,),
         drag=drag,
+        law_u=SPHERE_LAW_U,
     )
 
 
-@_form("velocity-power", SPHERE_LAW)
+@form("velocity-power", SPHERE_LAW)
 def _velocity_power(made_by: Recipe) -> Form:
     sphere, descriptor = DRAG[made_by.base].formula, made_by.descriptor
 
@@ -204,10 +152,11 @@ def _velocity_power(made_by: Recipe) -> Form:
         ),
         needs=(descriptor,),
         drag=drag,
+        law_u=SPHERE_LAW_U,
     )
 
 
-@_form("effective-sphericity", "ganser-1993")
+@form("effective-sphericity", "ganser-1993")
 def _effective_sphericity(made_by: Recipe) -> Form:
     published, lots = DRAG[made_by.base], made_by.lots
 
@@ -229,24 +178,5 @@ def _effective_sphericity(made_by: Recipe) -> Form:
         f"{_written_out(made_by.base)}",
         parameters=each or single,
         needs=("lot",) if lots else (),
-        drag=drag,
-    )
-
-
-@_form("chien-refit", "chien-1994")
-def _chien_refit(made_by: Recipe) -> Form:
-    def drag(values: Values, reynolds: FloatArray, descriptors: Descriptors) -> FloatArray:
-        a, b = values
-        return np.asarray(a / reynolds + b * np.exp(-5.03 * descriptors["sphericity"]))
-
-    return Form(
-        recipe=made_by,
-        formula="Cd = A/Re + B exp(-5.03 s), s = sphericity; the exponent is kept, cuttings of like shape cannot tell "
-        f"it from B ({DRAG['chien-1994'].source})",
-        parameters=(
-            Parameter("A", 30.0, 3.0, 300.0, "creeping drag coefficient times Re, 30 in print"),
-            Parameter("B", 67.289, 5.0, 900.0, "scale of the drag coefficient at high Re, 67.289 in print"),
-        ),
-        needs=("sphericity",),
         drag=drag,
     )

@@ -10,7 +10,7 @@ import pandas as pd
 from numpy.typing import ArrayLike
 
 from settlelab.calibrate.card import Card
-from settlelab.calibrate.forms import Form
+from settlelab.calibrate.form import Form
 from settlelab.physics.constants import FloatArray
 
 __all__ = ["CalibratedFit", "Calibration", "FittedParameter"]
@@ -18,7 +18,10 @@ __all__ = ["CalibratedFit", "Calibration", "FittedParameter"]
 
 @dataclass(frozen=True, slots=True, kw_only=True)
 class FittedParameter:
-    """A parameter with its standard uncertainty and 95 % interval; these are nan where it stands at a bound."""
+    """A parameter with its standard uncertainty and 95 % interval; these are nan where it stands at a bound.
+
+    The interval is that of the profile likelihood for the form that is chosen, and symmetric for the others.
+    """
 
     name: str
     value: float
@@ -97,10 +100,13 @@ class Calibration:
     """Which law holds for these drops, and the calibrated form if one does better on particles it has not seen."""
 
     ranking: pd.DataFrame  # columns of ranking.csv, best first
+    ranking_by_group: pd.DataFrame  # the same measures by lot and by decade of the Reynolds number
     predictions: pd.DataFrame  # drop, method, kind, predicted_velocity [m/s, unbounded], deviation, in_range
     best_published: str
     fits: tuple[CalibratedFit, ...]
     chosen: CalibratedFit | None  # None: the published law is kept
     card: Card
+    residual_checks: pd.DataFrame  # of the law on the card: tests for trends, lots, normality
+    influence: pd.DataFrame | None  # what leaving out a particle moves; None for a published law
     left_out: Mapping[str, str]  # published methods and forms that could not be used, with the reason
     notes: tuple[str, ...]  # the verdict first

@@ -7,7 +7,7 @@ dropped. Intervals come from a bootstrap that draws whole particles.
 from __future__ import annotations
 
 from collections.abc import Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import Annotated
 
 import numpy as np
@@ -29,11 +29,13 @@ __all__ = [
     "predictions",
     "published_contender",
     "rank",
+    "rank_by_group",
     "squared_error",
 ]
 
 DRAWS, SEED = 1000, 20250  # of the bootstrap; a fixed seed, so that the same drops give the same table
 WITHIN = (10, 20, 30)  # percent
+FEWEST_DRAWN = 5  # particles of a group; of fewer the bootstrap tells no interval
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -50,6 +52,12 @@ class Contender:
     cv_deviation: FloatArray | None = None
     cv_lot_deviation: FloatArray | None = None
     facts: dict[str, object]
+
+    def take(self, chosen: BoolArray) -> Contender:
+        """The same for some of the drops."""
+        names = ("deviation", "in_range", "cv_deviation", "cv_lot_deviation")
+        arrays = {name: getattr(self, name) for name in names}
+        return replace(self, **{name: values[chosen] for name, values in arrays.items() if values is not None})
 
 
 @dataclass(frozen=True, slots=True, kw_only=True)
@@ -94,7 +102,7 @@ def rank(contenders: Sequence[Contender], seen: Observations) -> pd.DataFrame:
     """
     share = by_particle(seen, np.eye(len(seen.drop)))  # (particles, drops), rows sum to 1
     draws = particle_draws(share.shape[0])
-    table = pd.DataFrame([_row(contender, seen, share, draws) for contender in contenders])
+    table = pd.DataFrame([_row(contender, share, draws) | contender.facts for contender in contenders])
     squares = np.column_stack([share @ squared_error(contender) for contender in contenders])
     merit = squares.mean(axis=0)
     table["as_good_as_best"] = False
@@ -104,6 +112,32 @@ def rank(contenders: Sequence[Contender], seen: Observations) -> pd.DataFrame:
         gap = draws @ (squares[:, of_kind] - squares[:, [best]])
         table.loc[of_kind, "as_good_as_best"] = np.quantile(gap, 0.025, axis=0) <= 0
     return table.iloc[np.argsort(merit, kind="stable")].reset_index(drop=True)
+
+
+def rank_by_group(contenders: Sequence[Contender], seen: Observations) -> pd.DataFrame:
+    """How far each method is from the drops of each lot, and of each decade of the Reynolds number.
+
+    Columns `by` ("lot" or "reynolds") and `group` (its name, or such as "1 to 10"), then the measures of the ranking,
+    best first within a group. A lot without a name is none. Intervals are missing where a group has fewer than five
+    particles.
+    """
+    decade = np.floor(np.log10(seen.reynolds)).astype(np.int64)
+    groups = [("lot", lot, seen.lot == lot) for lot in dict.fromkeys(seen.lot.tolist()) if lot]
+    groups += [("reynolds", f"{10.0**low:g} to {10.0 ** (low + 1):g}", decade == low) for low in np.unique(decade)]
+    return pd.concat([_rank_group(by, name, mask, contenders, seen) for by, name, mask in groups], ignore_index=True)
+
+
+def _rank_group(
+    by: str, name: str, mask: BoolArray, contenders: Sequence[Contender], seen: Observations
+) -> pd.DataFrame:
+    part = seen.take(mask)
+    share = by_particle(part, np.eye(len(part.drop)))
+    draws = particle_draws(share.shape[0])
+    table = pd.DataFrame([{"by": by, "group": name} | _row(each.take(mask), share, draws) for each in contenders])
+    if share.shape[0] < FEWEST_DRAWN:
+        table.loc[:, [column for column in table if column.endswith(("_low_percent", "_high_percent"))]] = np.nan
+    merit = table["cv_rms_percent"].fillna(table["rms_percent"])
+    return table.iloc[np.argsort(merit, kind="stable")]
 
 
 def squared_error(contender: Contender) -> FloatArray:
@@ -124,14 +158,15 @@ def particle_draws(particles: int) -> FloatArray:
     return np.random.default_rng(SEED).multinomial(particles, equal, size=DRAWS) / particles
 
 
-def _row(contender: Contender, seen: Observations, share: FloatArray, draws: FloatArray) -> dict[str, object]:
+def _row(contender: Contender, share: FloatArray, draws: FloatArray) -> dict[str, object]:
+    """The measures of a contender; `share` weighs its drops to particles, `draws` particles to bootstrap samples."""
     weight = share.mean(axis=0)
     off = 100 * contender.deviation
     bias, square = share @ off, share @ off**2
     row: dict[str, object] = {
         "method": contender.name,
         "kind": contender.kind,
-        "drops": len(seen.drop),
+        "drops": share.shape[1],
         "particles": share.shape[0],
         "in_range_percent": 100 * float(weight @ contender.in_range),
         "bias_percent": float(bias.mean()),
@@ -144,7 +179,7 @@ def _row(contender: Contender, seen: Observations, share: FloatArray, draws: Flo
     row["cv_lot_rms_percent"] = _rms(contender.cv_lot_deviation, weight)
     for name, drawn in (("bias", draws @ bias), ("rms", np.sqrt(draws @ square))):
         row[f"{name}_low_percent"], row[f"{name}_high_percent"] = np.quantile(drawn, (0.025, 0.975)).tolist()
-    return row | contender.facts
+    return row
 
 
 def _rms(deviations: FloatArray | None, weight: FloatArray) -> float:

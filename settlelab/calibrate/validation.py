@@ -6,7 +6,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from settlelab.calibrate.fit import LawFit
-from settlelab.calibrate.forms import Form
+from settlelab.calibrate.form import Form
 from settlelab.physics.constants import FloatArray
 
 __all__ = ["parameters_without"]

@@ -21,7 +21,13 @@ SHOWN = 5  # published methods printed; ranking.csv has them all
 @click.argument("table", type=click.Path(path_type=Path))
 @click.option("--out", type=click.Path(path_type=Path, file_okay=False), required=True, help="Folder for the results.")
 @click.option("--descriptor", "descriptors", multiple=True, help="Shape descriptor to calibrate on; may be repeated.")
-@click.option("--form", "forms", multiple=True, help="Calibrated form to fit; may be repeated [default: all].")
+@click.option(
+    "--form",
+    "forms",
+    multiple=True,
+    help='Calibrated form to fit, or one of your own such as "formula: a/Re + b*exp(-5*sphericity); a=30" with values '
+    "to start from; may be repeated [default: all on board].",
+)
 @click.option("--title", default="", help="For the card: what was tested.")
 @click.option("--date", default="", help="For the card: when.")
 @click.option("--by", default="", help="For the card: by whom.")
@@ -52,6 +58,7 @@ def _write(calibration: Calibration, out: Path) -> list[Path]:
 
     return [
         write_csv(calibration.ranking, None, out / "ranking.csv"),
+        write_csv(calibration.ranking_by_group, None, out / "ranking_by_group.csv"),
         write_csv(calibration.predictions, PredictedDrop, out / "predictions.csv"),
         write_card(calibration.card, out / "calibration.json"),
     ]

@@ -67,11 +67,24 @@ def _named(text: str) -> tuple[str, float]:
 @click.option("--temperature", type=_si("K"), help='Such as "21.5 °C".')
 @click.option("--mass-fraction", type=_si("1"), help='Of glycerol, such as "62 %".')
 @click.option(
-    "--out", type=click.Path(path_type=Path, file_okay=False), help="Folder for prediction.csv and prediction.svg."
+    "--annular-velocity",
+    type=_si("m/s"),
+    help='Of mud in a vertical annulus, such as "0.7 m/s": adds transport ratios.',
+)
+@click.option(
+    "--inclination",
+    type=click.FloatRange(0, 180),
+    default=0.0,
+    help="Of that hole from vertical, in degrees [default: 0].",
+)
+@click.option(
+    "--out",
+    type=click.Path(path_type=Path, file_okay=False),
+    help="Folder for prediction.csv and prediction.svg, and annulus.csv where asked for.",
 )
 def command(card: Path, particles: Path | None, lot: str | None, out: Path | None, **given: Any) -> None:  # noqa: ANN401 (options of several types)
     """Predict velocities by a calibration card. For other sizes and fluids, with 95 % intervals."""
-    from settlelab.calibrate import predict, read_card
+    from settlelab.calibrate import ANNULUS_CAUTIONS, in_annulus, predict, read_card
 
     law = read_card(card)
     fluid = _fluid(law, given)
@@ -84,11 +97,16 @@ def command(card: Path, particles: Path | None, lot: str | None, out: Path | Non
         rheology=fluid.rheology,
         descriptors={name: sizes[name].to_numpy() for name in sizes.columns},
     )
+    annulus = None
+    if given["annular_velocity"] is not None:
+        annulus = in_annulus(table, given["annular_velocity"], given["inclination"])
     click.echo(f"{law.name}, in {fluid.told}\n")
     _show(table)
+    if annulus is not None:
+        _show_annulus(annulus)
     if out is not None:
-        console.written(_write(table, law, out))
-    console.doubts([*told, *law.cautions])
+        console.written(_write(table, annulus, law, out))
+    console.doubts([*told, *law.cautions, *(ANNULUS_CAUTIONS if annulus is not None else ())])
 
 
 def _fluid(card: Card, given: dict[str, Any]) -> SettlingFluid:
@@ -173,6 +191,23 @@ def _show(table: pd.DataFrame) -> None:
     click.echo()
 
 
+def _show_annulus(table: pd.DataFrame) -> None:
+    from settlelab.calibrate.annulus import USUAL_RATIO
+
+    click.echo(f"in a vertical annulus at {table['annular_velocity'][0]:.4g} m/s")
+    click.echo("diameter       slip       rise   transport    95 %, one particle")
+    click.echo("      mm       mm/s       mm/s       ratio")
+    for row in table.to_dict("records"):
+        spread = f"{row['transport_ratio_low']:.2f} to {row['transport_ratio_high']:.2f}"
+        low = row["transport_ratio_low"] < USUAL_RATIO
+        click.echo(
+            f"{1e3 * row['equivalent_diameter']:8.4g} {1e3 * row['slip_velocity']:10.4g}"
+            f" {1e3 * row['rise_velocity']:10.4g} {row['transport_ratio']:11.2f} {spread:>21}"
+            + (f"  may fall below {USUAL_RATIO:g}" if low else "")
+        )
+    click.echo()
+
+
 def _spoken(outside: str) -> str:
     endings = ("_mm", "_kg_m3")
     names = [
@@ -181,8 +216,8 @@ def _spoken(outside: str) -> str:
     return ", ".join("Reynolds number" if name == "reynolds" else name.replace("_", " ") for name in names)
 
 
-def _write(table: pd.DataFrame, card: Card, out: Path) -> list[Path]:
-    from settlelab.calibrate import Prediction
+def _write(table: pd.DataFrame, annulus: pd.DataFrame | None, card: Card, out: Path) -> list[Path]:
+    from settlelab.calibrate import AnnulusRow, Prediction
     from settlelab.report import write_csv
     from settlelab.report.drawing import picture
     from settlelab.report.predicted import predicted_velocities
@@ -190,4 +225,6 @@ def _write(table: pd.DataFrame, card: Card, out: Path) -> list[Path]:
     chart = out / "prediction.svg"
     written = [write_csv(table, Prediction, out / "prediction.csv"), chart]
     chart.write_bytes(picture(predicted_velocities(table, title=card.name), "svg"))
+    if annulus is not None:
+        written.append(write_csv(annulus, AnnulusRow, out / "annulus.csv"))
     return written

@@ -14,7 +14,7 @@ from settlelab.measure.fluids import FluidState, flow_curve
 from settlelab.measure.particle import Grain
 from settlelab.measure.propagation import Effect, Estimate, propagate
 from settlelab.physics.constants import FloatArray
-from settlelab.physics.drag import DRAG, DragLaw, terminal_velocity
+from settlelab.physics.drag import DRAG, SPHERE_LAW_U, DragLaw, terminal_velocity
 from settlelab.physics.walls import wall_factor
 
 __all__ = [
@@ -32,10 +32,8 @@ __all__ = [
 ]
 
 LAW = "cheng-2009"
-# Relative standard uncertainty of its drag coefficient: the good laws for spheres spread by 5 % (k = 2) from Re 0.01 to
-# 1e4. The creeping drag of a sphere in power-law fluid is computed up to 4 % apart (rectangular over that range).
-LAW_U = 0.025
-LAW_U_NON_NEWTONIAN = math.hypot(LAW_U, 0.04 / math.sqrt(3))
+# The creeping drag of a sphere in power-law fluid is computed up to 4 % apart (rectangular over that range).
+LAW_U_NON_NEWTONIAN = math.hypot(SPHERE_LAW_U, 0.04 / math.sqrt(3))
 COVERAGE = 2.0
 
 CONTROL_COLUMNS = (
@@ -91,7 +89,7 @@ def sphere_law(fluid: FluidState) -> Law:
     """The standard drag curve of spheres, as sure as it is in this fluid."""
     _, flow_index, yield_stress = fluid.rheology.arrays()
     newtonian = flow_index == 1.0 and yield_stress == 0.0
-    return Law(DRAG[LAW].drag_coefficient, LAW_U if newtonian else LAW_U_NON_NEWTONIAN)
+    return Law(DRAG[LAW].drag_coefficient, SPHERE_LAW_U if newtonian else LAW_U_NON_NEWTONIAN)
 
 
 def expected_velocity(particle: Grain, setup: Setup, law: Law | None = None) -> Estimate:

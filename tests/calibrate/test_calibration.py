@@ -149,6 +149,38 @@ def test_sphericity_of_each_lot_is_not_taken_unasked() -> None:
     assert found.chosen is None or found.chosen.name != by_lot
 
 
+def test_an_unconfirmed_formula_that_comes_closest_is_told(monkeypatch: pytest.MonkeyPatch) -> None:
+    drops = draw(published("ganser-1993"), Lots(scatter=0.02), 4)
+    told = "The formula of ganser-1993 is not confirmed against its source: settlelab methods says why."
+    sure = calibrate_drops(drops)
+    assert sure.best_published == "ganser-1993"
+    assert told not in sure.notes
+    doubtful = replace(DRAG["ganser-1993"], confirmed=False)
+    monkeypatch.setattr(
+        "settlelab.calibrate.calibration.usable_methods", lambda known: ((doubtful, DRAG["chien-1994"]), {})
+    )
+    assert told in calibrate_drops(drops).notes
+
+
+def test_ranking_by_lot_and_by_decade_of_the_reynolds_number(shaped: pd.DataFrame) -> None:
+    """Against the same measures of the predictions, taken by hand."""
+    found = calibrate_drops(shaped)
+    table, each = found.ranking_by_group, found.predictions
+    assert table.loc[table["by"] == "lot", "group"].unique().tolist() == ["north", "south", "east"]
+    decades = table[table["by"] == "reynolds"]
+    assert {"10 to 100", "100 to 1000"} <= set(decades["group"])
+    counts = table[table["method"] == "ganser-1993"].groupby("by")["drops"].sum()
+    assert counts.tolist() == [len(shaped), len(shaped)]
+    north = np.flatnonzero(shaped["lot"] == "north") + 1
+    off = each[(each["method"] == "ganser-1993") & each["drop"].isin(north)]["deviation"]
+    row = table[(table["group"] == "north") & (table["method"] == "ganser-1993")].iloc[0]
+    assert row["rms_percent"] == pytest.approx(100 * np.sqrt(np.mean(off**2)))  # two drops of every particle
+    assert row["bias_low_percent"] < 100 * off.mean() < row["bias_high_percent"]
+    few = table["particles"] < 5
+    assert few.any()
+    assert (table["rms_low_percent"].isna() == few).all()
+
+
 def test_a_fluid_that_thins_under_shear(shaped: pd.DataFrame) -> None:
     """Newtonian and power-law fluids in one fit."""
     thin = shaped["fluid"] == "fluid 1"

@@ -2,13 +2,21 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 
-from settlelab.calibrate.covariance import Covariance, deviance, known_covariance, restricted_scatter
+from settlelab.calibrate.covariance import (
+    Covariance,
+    deviance,
+    known_covariance,
+    law_effects,
+    restricted_scatter,
+)
 from settlelab.calibrate.falls import settle
 from settlelab.calibrate.observations import observe, particle_means
-from tests.calibrate.lots import Lots, draw, power_law_of_shape
+from tests.calibrate.lots import Lots, draw, power_law_of_shape, published
 
 
 @pytest.fixture
@@ -75,3 +83,16 @@ def test_what_is_common_to_a_fluid_is_common() -> None:
     other_fluid = seen.fluid[:, None] != seen.fluid
     assert np.all(full[other_fluid] == 0)
     assert np.all(full[~other_fluid] > 0)
+
+
+def test_an_error_of_the_law_is_common_to_like_reynolds_numbers() -> None:
+    """Stokes' law: V goes as 1/Cd, so the velocity is as uncertain as the drag coefficient."""
+    seen = particle_means(observe(draw(published("stokes-1851"), Lots(particles=9), 1))[0])
+    seen = replace(seen, reynolds=np.logspace(-2, 2, len(seen.drop)))
+    law = published("stokes-1851")
+    effects = law_effects(seen, law, settle(law, seen.falls).velocity, 0.025)
+    together = effects @ effects.T / 0.025**2
+    np.testing.assert_allclose(np.diag(together), 1.0, rtol=1e-6)
+    apart = np.abs(np.log10(seen.reynolds)[:, None] - np.log10(seen.reynolds))
+    assert np.all(np.abs(together[apart >= 2]) < 1e-12)
+    assert np.all(together[apart <= 0.5] > 0.7)

@@ -121,3 +121,40 @@ def test_bad_sizes_are_named(card: str, tmp_path: Path) -> None:
     assert result.exit_code == 1
     assert 'sizes.csv, row 2, column "diameter [mm]": "-2" is not a length above 0' in result.output
     assert "row 3" in result.output
+
+
+def test_a_vertical_annulus(card: str, tmp_path: Path) -> None:
+    """Transport ratio 1 - slip/annular velocity (Sifferman et al. 1974)."""
+    sizes = ["--diameter", "2 mm", "--diameter", "8 mm"]
+    result = run(card, *FLUID, *sizes, "--annular-velocity", "0.4 m/s", "--out", str(tmp_path))
+    assert result.exit_code == 0, result.output
+    assert "in a vertical annulus at 0.4 m/s" in result.output
+    assert "Flowing mud is sheared" in result.output
+    table = pd.read_csv(tmp_path / "annulus.csv")
+    slip = pd.read_csv(tmp_path / "prediction.csv")["velocity_mm_s"]
+    assert table["rise_velocity_mm_s"].to_numpy() == pytest.approx((400 - slip).to_numpy(), rel=1e-4)
+    assert table["transport_ratio"].to_numpy() == pytest.approx((1 - slip / 400).to_numpy(), rel=1e-4)
+    assert (table["transport_ratio_low"] < table["transport_ratio"]).all()
+    assert (table["transport_ratio"] < table["transport_ratio_high"]).all()
+
+
+def test_a_slow_annulus_carries_nothing_and_says_so(card: str, tmp_path: Path) -> None:
+    result = run(card, *FLUID, "--diameter", "5 mm", "--annular-velocity", "2 cm/s", "--out", str(tmp_path))
+    assert pd.read_csv(tmp_path / "annulus.csv")["rise_velocity_mm_s"][0] < 0
+    assert "may fall below 0.5" in result.output
+
+
+@pytest.mark.parametrize(
+    ("arguments", "code", "sentence"),
+    [
+        (["0.5 m/s", "--inclination", "35"], 1, "no transport ratio at 35 degrees from vertical"),
+        (["0 m/s"], 1, "the annular velocity must be above 0"),
+        (["0.5 m/s", "--inclination", "-3"], 2, "--inclination"),
+        (["5 mm"], 2, '"5 mm" is not a velocity such as'),
+        (["0.5 m/s", "--inclination", "30"], 0, "transport"),
+    ],
+)
+def test_an_annulus_that_tells_nothing_is_refused(card: str, arguments: list[str], code: int, sentence: str) -> None:
+    result = run(card, *FLUID, "--diameter", "2 mm", "--annular-velocity", *arguments)
+    assert result.exit_code == code
+    assert sentence in result.output

@@ -43,6 +43,7 @@ from settlelab.physics.drag.solver import (
     drag_in_fluid,
     terminal_velocity,
 )
+from settlelab.physics.drag.spheres import SPHERE_LAW_U
 
 __all__ = [
     "CRITICAL_YIELD_NUMBER",
@@ -50,6 +51,7 @@ __all__ = [
     "DESCRIPTORS",
     "DRAG",
     "MUD",
+    "SPHERE_LAW_U",
     "DragLaw",
     "Method",
     "MudMethod",

@@ -10,6 +10,10 @@ import numpy as np
 from settlelab.physics.constants import FloatArray
 from settlelab.physics.drag.registry import published
 
+# Relative standard uncertainty of the drag coefficient by any good law for spheres: they spread by 5 % (k = 2) from
+# Re 0.01 to 1e4.
+SPHERE_LAW_U = 0.025
+
 
 @published(
     "stokes-1851",
