@@ -103,10 +103,10 @@ def test_ends_at_terminal_velocity(diameter: float, density: float, flow_index: 
     body, medium = Body(diameter=diameter, density=density), Medium(density=1050.0, rheology=mud)
     law = DRAG["cheng-2009"].drag_coefficient
     settling = terminal_velocity(law, diameter=diameter, particle_density=density, fluid_density=1050, rheology=mud)
-    # close to the yield limit the approach takes many times the scale of 1/drag that the fall is followed for
-    assume(mud.yield_stress < 0.5 * CRITICAL_YIELD_NUMBER * G * diameter * (density - 1050))
+    # the approach takes hundreds of these time scales near the yield limit, and without bound at it
+    assume(mud.yield_stress < 0.95 * CRITICAL_YIELD_NUMBER * G * diameter * (density - 1050))
     scale = float(settling.velocity) * (density + 525) / (G * (density - 1050))
-    fall = fall_from_release(law, body, medium, np.linspace(0, 60 * scale, 50), wall_factor=wall)
+    fall = fall_from_release(law, body, medium, np.linspace(0, 6000 * scale, 50), wall_factor=wall)
     assert fall.velocity[-1] == pytest.approx(float(settling.velocity) * wall, rel=1e-5)
     assert np.all(np.diff(fall.velocity) > -1e-6 * settling.velocity)
 
