@@ -11,6 +11,7 @@ import numpy as np
 import pandas as pd
 
 from settlelab.measure.model import Measured
+from settlelab.physics.oilfield import readings_of_the_fall
 from settlelab.report.numbers import MISSING, percent, significant
 from settlelab.report.views import Show, TableView, UnitSystem, quantity_text, table_view
 from settlelab.study.model import Column, Fluid, Study
@@ -210,7 +211,24 @@ def _fluid_row(fluid: Fluid, drops: pd.DataFrame, system: UnitSystem) -> tuple[s
     viscosity = quantity_text(thin["viscosity"], thin["viscosity_u"], "mPa s", system)
     if thick["viscosity"] > 1.001 * thin["viscosity"]:
         viscosity += f" to {quantity_text(thick['viscosity'], thick['viscosity_u'], 'mPa s', system)}"
-    return fluid.name, fluid.liquid, temperature, density, viscosity, _flow_curve(first)
+    curve = _flow_curve(first) + _readings_used(fluid, drops)
+    return fluid.name, fluid.liquid, temperature, density, viscosity, curve
+
+
+def _readings_used(fluid: Fluid, drops: pd.DataFrame) -> str:
+    """Which viscometer readings the falls rest on: those at shear rates around theirs."""
+    if fluid.readings is None:
+        return ""
+    rates = fluid.readings.shear_rate
+    used = rates[readings_of_the_fall(rates, drops["unbounded_velocity"], drops["equivalent_diameter"])]
+    sheared = drops["unbounded_velocity"] / drops["equivalent_diameter"]
+    low, high = significant(float(sheared.min()), 2), significant(float(sheared.max()), 2)
+    outside = sheared.min() < rates.min() or sheared.max() > rates.max()
+    rest = "extrapolated from" if outside else "bracketed by"
+    return (
+        f"; the falls shear at {low} to {high} 1/s, {rest} {len(used)} of {len(rates)} readings,"
+        f" {significant(float(used.min()), 2)} to {significant(float(used.max()), 2)} 1/s"
+    )
 
 
 def _flow_curve(row: pd.Series) -> str:

@@ -1,14 +1,16 @@
 from __future__ import annotations
 
 from dataclasses import replace
+from pathlib import Path
 
+import numpy as np
 import pandas as pd
 import pytest
 
 from settlelab.report import lab_table, sections
 from settlelab.report.origin import origin
 from settlelab.report.views import TableView
-from settlelab.study.model import Camera, Column, Fluid
+from settlelab.study.model import Camera, Column, Fluid, ViscometerReadings
 from settlelab.units import Quantity
 from tests.report.invented import budget_of, drop, invented_drops, measured_of, study_of, tracked_of
 
@@ -72,6 +74,23 @@ def test_fluids_as_the_drops_saw_them() -> None:
     assert power_law["viscosity at the falls"] == "80.0 ± 2.0 cP to 120.0 ± 2.0 cP"
     assert power_law["flow curve"] == "consistency 0.5000 Pa·sⁿ, flow index 0.6000"
     assert spare["flow curve"] == "no drop in it"
+
+
+@pytest.mark.parametrize(
+    ("rates", "told"),
+    [
+        ([5.0, 20.0, 50.0, 200.0], "shear at 26 to 26 1/s, bracketed by 2 of 4 readings, 20 to 50 1/s"),
+        ([100.0, 200.0, 500.0], "shear at 26 to 26 1/s, extrapolated from 1 of 3 readings, 100 to 100 1/s"),
+    ],
+)
+def test_the_readings_that_the_falls_rest_on_are_told(rates: list[float], told: str) -> None:
+    stress = 0.5 * np.array(rates) ** 0.6
+    readings = ViscometerReadings(
+        file=Path("v.csv"), shear_rate=np.array(rates), shear_stress=stress, u_shear_stress=0.01 * stress
+    )
+    study = study_of(fluids=(Fluid(name="polymer", liquid="measured", readings=readings),))
+    drops = measured_of([drop(1, fluid="polymer", consistency=0.5, flow_index=0.6)]).drops  # 0.104 m/s over 4 mm
+    assert told in texts(sections.fluids_view(study, drops, "lab"))[0]["flow curve"]
 
 
 def test_recordings_and_columns_as_used() -> None:
