@@ -98,7 +98,7 @@ def measure_study(study: Study, recordings: Sequence[TrackedRecording]) -> Measu
             bore=bore_of(recording.column),
             fluid=states[recording.fluid.name],
         )
-        tables.note((), (*_doubts(recording, tracked, setup), *tracked.notes))
+        tables.note((), _doubts(recording, tracked, setup))
         for track, particle in zip(tracked.falls, _particles(study, recording, tracked), strict=True):
             _add_drop(tables, _Fall(recording, tracked, track, setup), particle)
     controls = pd.DataFrame(tables.controls, columns=list(CONTROL_COLUMNS)).astype({"passed": bool})
@@ -108,6 +108,7 @@ def measure_study(study: Study, recordings: Sequence[TrackedRecording]) -> Measu
     scatter = scatter_of(drops)
     intervals = pd.DataFrame(tables.intervals, columns=list(INTERVAL_COLUMNS))
     tables.note((), (*(scatter.told if scatter is not None else ()), *departures(intervals)))
+    tables.note((), (note for tracked in recordings for note in tracked.notes))  # last: most are assumptions
     return Measured(
         drops=drops,
         budget=pd.DataFrame(tables.budget, columns=["drop", "output", "input", "share"]).astype({"share": float}),
