@@ -51,7 +51,7 @@ def barati_22(reynolds: FloatArray) -> FloatArray:
     where="eq. 23",
     valid={"reynolds": (0.0, 1e6)},
     diameter="sphere",
-    note="Includes the drag crisis of a smooth sphere. From genetic programming. One public transcription drops the "
+    note="Includes the drag crisis of a smooth sphere. From genetic programming. One public copy drops the "
     "last term, 2.4795. Beyond its range the value at its end is kept.",
 )
 def barati_23(reynolds: FloatArray) -> FloatArray:
