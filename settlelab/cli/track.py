@@ -67,12 +67,12 @@ def command(
     out.mkdir(parents=True, exist_ok=True)
     console.written(
         [
-            write_csv(track_table(tracked), TrackPoint, out / "tracks.csv"),
+            write_csv(track_table(tracked), TrackPoint, out / "tracks.csv", digits=9),
             write_csv(drops, Drop, out / "drops.csv"),
             save_overlay(overlay(tracked, drops), out / "overlay.png"),
         ]
     )
-    console.doubts(tracked.notes)
+    console.doubts([*tracked.notes, "the scale is taken as exact: ± (k = 1) is that of track and clock alone"])
 
 
 def _tell(tracked: TrackedRecording, drops: pd.DataFrame) -> None:

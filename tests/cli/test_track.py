@@ -83,3 +83,10 @@ def test_what_cannot_be_done_is_one_sentence_and_exit_1(tmp_path: Path) -> None:
 def test_wrong_usage_is_exit_2(wrong: list[str], tmp_path: Path) -> None:
     code, _ = run("a.mp4", *wrong, "--out", str(tmp_path / "out"))
     assert code == 2
+
+
+def test_says_what_the_uncertainty_leaves_out(tmp_path: Path) -> None:
+    pictures = as_folder(Scene(discs=[Disc(x=80, y=-20, diameter=14, vy=6.0)], frames=70), tmp_path / "pictures")
+    code, told = run(str(pictures), "--mm-per-px", "0.1", "--frame-rate", "50", "--out", str(tmp_path / "out"))
+    assert code == 0
+    assert "the scale is taken as exact" in told
