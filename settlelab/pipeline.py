@@ -92,6 +92,8 @@ def track_recordings(
 ) -> list[TrackedRecording]:
     """Track every recording of a study that `archive` does not hold yet, and return all of them in order.
 
+    What the archive holds of other pictures, settings or trackers is removed once all is well.
+
     Raises
     ------
     RecordingError
@@ -107,6 +109,8 @@ def track_recordings(
             progress(done, len(waiting))
     if failures:  # in the order of the study, whichever process finished first
         raise RecordingError("\n".join(str(failures[path]) for path in waiting if path in failures))
+    for outdated in set(archive.glob("*.npz")) - set(paths):
+        outdated.unlink()
     return [load_tracked(path) for path in paths]
 
 

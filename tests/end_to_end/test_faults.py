@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 import shutil
 from collections.abc import Callable
 from pathlib import Path
@@ -106,6 +107,20 @@ def test_a_video_that_yields_no_frame_is_named_with_what_to_do(tmp_path: Path) -
     assert video.name in result.output
     assert "H.264" in result.output
     assert "Traceback" not in result.output
+
+
+def test_a_study_that_was_corrected_is_tracked_anew_and_leaves_nothing_behind(study: Path) -> None:
+    assert settlelab("run", study, "--workers", 1).exit_code == 0
+    before = set((study / "results" / "tracked").iterdir())
+    text = (study / "study.toml").read_text(encoding="utf-8")
+    doubled = re.sub(r'frame_rate = "([0-9.]+)', lambda found: f'frame_rate = "{2 * float(found.group(1)):g}', text)
+    (study / "study.toml").write_text(doubled, encoding="utf-8")
+    slow = drop_table(study / "results")["velocity"]
+    assert settlelab("run", study, "--workers", 1).exit_code == 0
+    after = set((study / "results" / "tracked").iterdir())
+    assert len(after) == len(before) == 2
+    assert not after & before
+    assert drop_table(study / "results")["velocity"].to_numpy() == pytest.approx(2 * slow.to_numpy(), rel=0.02)
 
 
 @pytest.mark.parametrize(
