@@ -38,7 +38,9 @@ def leith(reynolds: FloatArray, sphericity: FloatArray, projected_area_ratio: Fl
     valid={"reynolds": (0.0, 2.5e4)},
     diameter="volume-equivalent",
     note="Discs, rods and chips. The wall term of K1 (-2.25 d/D) is left out: walls are corrected for apart, and "
-    "never twice. The limit Re K1 K2 <= 1e5 stands here as Re <= 2.5e4.",
+    "never twice. The limit Re K1 K2 <= 1e5 stands here as Re <= 2.5e4. No value in print was at hand to check it; its "
+    "coefficients have two witnesses, and for a sphere it equals the isometric form.",
+    confirmed=False,
 )
 def ganser_nonisometric(reynolds: FloatArray, sphericity: FloatArray, projected_area_ratio: FloatArray) -> FloatArray:
     """Drag coefficient by sphericity and projected area: Stokes and Newton shape factors."""

@@ -267,8 +267,7 @@ def test_every_law_has_a_value_from_outside_or_is_marked() -> None:
     rows = {row["method"] for name in ("drag_coefficients.csv", "explicit_laws.csv") for row in published(name)}
     rows |= {row["law"] for row in published("terminal_velocities.csv")}
     rows |= {name for name, seams in FIELD_CONSTANTS.items() if seams}
-    assert [name for name, method in DRAG.items() if name not in rows | NO_VALUE and method.confirmed] == []
-    assert [name for name in NO_VALUE if name in rows] == []
+    assert [name for name, method in DRAG.items() if name not in rows and method.confirmed] == []
 
 
 # Checked through their constants in tests/published/values.csv (field units, K1 and K3).
@@ -278,8 +277,6 @@ FIELD_CONSTANTS = {
     "pettyjohn-christiansen-1948-stokes": ("0.921754",),
     "pettyjohn-christiansen-1948-newton": ("1.37672",),
 }
-# Laws without a value of their own: for some shape each is a law that has one (test below).
-NO_VALUE = {"ganser-1993-nonisometric"}
 
 
 def test_laws_that_are_other_laws() -> None:
