@@ -74,9 +74,10 @@ def _show(calibration: Calibration) -> None:
     for row in shown.to_dict("records"):
         cross = "" if row["kind"] == "published" else f"{row['cv_rms_percent']:.1f}"
         mark = "*" if row["kind"] == "calibrated" else " "
+        doubt = "" if row["confirmed"] else "  unconfirmed"
         click.echo(
             f"{mark} {row['method']:{width}}  {row['bias_percent']:+6.1f} {row['rms_percent']:6.1f}  {cross:>8}"
-            f"  {row['within_20_percent']:9.0f} %  {row['in_range_percent']:6.0f} %"
+            f"  {row['within_20_percent']:9.0f} %  {row['in_range_percent']:6.0f} %{doubt}"
         )
     hidden = int((ranking["kind"] == "published").sum()) - len(best)
     click.echo("* fitted to these drops; left out: rms on particles that were left out of the fit")

@@ -168,10 +168,12 @@ def viscosities_view(viscosities: pd.DataFrame, system: UnitSystem) -> TableView
 
 
 def ranking_view(calibration: Calibration) -> TableView:
-    """The ranking, the best published method and the chosen form in bold."""
+    """The ranking, the best published method and the chosen form in bold, unconfirmed laws marked at their source."""
     chosen = calibration.chosen.name if calibration.chosen else None
     best = {calibration.best_published, chosen}
-    return table_view(calibration.ranking, RANKING, kind=lambda row: "best" if row["method"] in best else "")
+    mark = calibration.ranking["confirmed"].map({True: "", False: " (unconfirmed)"})
+    ranking = calibration.ranking.assign(source=calibration.ranking["source"] + mark)
+    return table_view(ranking, RANKING, kind=lambda row: "best" if row["method"] in best else "")
 
 
 def budget_shares(measured: Measured) -> pd.DataFrame:

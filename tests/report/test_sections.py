@@ -12,7 +12,7 @@ from settlelab.report.origin import origin
 from settlelab.report.views import TableView
 from settlelab.study.model import Camera, Column, Fluid, ViscometerReadings
 from settlelab.units import Quantity
-from tests.report.invented import budget_of, drop, invented_drops, measured_of, study_of, tracked_of
+from tests.report.invented import budget_of, calibration_of, drop, invented_drops, measured_of, study_of, tracked_of
 
 
 def texts(view: TableView) -> list[dict[str, str]]:
@@ -130,3 +130,11 @@ def test_falling_ball_viscosities_stand_beside_those_stated() -> None:
     assert shown["viscosity by the falling spheres, mPa·s"] == "11.30 ± 0.40"
     assert shown["viscosity as stated, mPa·s"] == "11.10 ± 0.20"
     assert shown["most of the uncertainty from"] == "drag law"
+
+
+def test_unconfirmed_laws_are_marked_in_the_ranking() -> None:
+    calibration = calibration_of(measured_of(invented_drops()))
+    ranking = calibration.ranking.assign(confirmed=calibration.ranking["method"] != calibration.best_published)
+    rows = texts(sections.ranking_view(replace(calibration, ranking=ranking)))
+    marked = [row["correlation"] for row in rows if row["source"].endswith("(unconfirmed)")]
+    assert marked == [calibration.best_published]
